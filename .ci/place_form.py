@@ -1,13 +1,13 @@
 """Print the `peak` and `bands` lines of a form of which only the maximum is known, for pasting into a dye file.
 
-    python .ci/place_form.py monoanion 433 18300 --at 558 0.00089
+    python .ci/place_form.py phenol_red_monoanion 433 18300 --at 558 0.00244
     python .ci/place_form.py dianion_narrow 558 50000 --at 433 0.0393
     python .ci/place_form.py triaryl_blue 638 116500 --also 412 17500 3200
     python .ci/place_form.py guess_4000 507 45000 --fwhm 4200
 
 SHAPE is a table of band_shapes.toml. --at: published absorptivity at another wavelength as a share of the maximum; on
-the red side, and where the shape alone gives more, the skew of the widest band is adjusted; else a weak blue band is added. --also: a second band (wavelength,
-absorptivity, width in cm-1), such as the blue band of a green dye.
+the red side, and where the shape alone gives more, the skew of the widest band is adjusted; else a weak blue band is
+added. --also: a second band (wavelength, absorptivity, width in cm-1), such as the blue band of a green dye.
 """
 
 from __future__ import annotations
@@ -79,7 +79,8 @@ def main() -> None:
     print(f"peak = {{wavelength = {given.peak:g}, absorptivity = {given.height:g}, source = }}")
     print("bands = [")
     for band in result:
-        print(f"    {{wavenumber = {band.wavenumber:.1f}, height = {band.height:.1f}, fwhm = {band.fwhm:.1f}, skew = {band.skew:.4f}}},")
+        print(f"    {{wavenumber = {band.wavenumber:.1f}, height = {band.height:.1f}, "
+              f"fwhm = {band.fwhm:.1f}, skew = {band.skew:.4f}}},")
     print("]")
 
 

@@ -5,6 +5,7 @@ from __future__ import annotations
 import hashlib
 import re
 from collections.abc import Callable
+from itertools import pairwise
 from pathlib import Path
 from typing import Any
 
@@ -41,7 +42,7 @@ def read_dye(path: str | Path) -> dyes.Dye:
 def _sources(table: Table | None) -> dict[str, str]:
     if table is None:
         return {}
-    return {key: table.text(key) or "" for key in table.keys()}
+    return {key: table.text(key) or "" for key in table.every_key()}
 
 
 def cas_check_digit_holds(number: str) -> bool:
@@ -108,7 +109,7 @@ class _Reader:
         forms: tuple[dyes.Form, ...] = self.rows("form", self.form)
         if not forms:
             self.root.fault("form", "is missing. Give at least one [[form]].")
-        for upper, lower in zip(forms, forms[1:], strict=False):
+        for upper, lower in pairwise(forms):
             if lower.charge != upper.charge - 1:
                 self.root.fault("form", f"{lower.label} must have one charge less than {upper.label}.")
         if len({form.label for form in forms}) < len(forms):
@@ -157,7 +158,7 @@ class _Reader:
         steps: tuple[dyes.Step, ...] = self.rows("step", lambda table: self.step(table, next(charges)))
         if len(forms) != len(steps) + 1:
             self.root.fault("form", f"{len(forms)} forms for {len(steps)} steps. Give one form more than steps.")
-        for number, (step, after) in enumerate(zip(steps, steps[1:], strict=False), 2):
+        for number, (step, after) in enumerate(pairwise(steps), 2):
             if after.pka <= step.pka:
                 self.root.fault(f"step {number}", f"pka {after.stated:g} is not above the {step.stated:g} before it.")
         if any(step.slow for step in steps[:-1]):

@@ -144,7 +144,7 @@ class Table:
             else:
                 self.faults.append(f"{place}: must be a table, got {_shown(value)}.")
 
-    def keys(self) -> list[str]:
+    def every_key(self) -> list[str]:
         """Return all keys of the table, for a table whose keys are free."""
         self._taken.update(self._data)
         return list(self._data)

@@ -108,7 +108,8 @@ class Prediction:
         following = [*np.round(self.dE00_next, 3).tolist(), None]
         shown = self.patch.hex()
         return [{
-            "pH": round(float(self.pH[i]), 6), "XYZ": np.round(self.XYZ[i], 6).tolist(), "Lab": np.round(self.Lab[i], 3).tolist(),
+            "pH": round(float(self.pH[i]), 6), "XYZ": np.round(self.XYZ[i], 6).tolist(),
+            "Lab": np.round(self.Lab[i], 3).tolist(),
             "sRGB": np.round(self.patch.rgb[i], 5).tolist(), "hex": shown[i], "in_gamut": bool(self.patch.in_gamut[i]),
             "shown_dE00": round(float(self.patch.cost[i]), 3), "colour": self.words[i],
             "sd_dE00": round(float(self.sd_dE00[i]), 3), "peak_absorbance": round(float(self.peak_absorbance[i]), 4),

@@ -16,6 +16,7 @@ from mixind.errors import MixindError, nearest
 
 PH_RANGE = (-1.0, 15.0)
 SMALLEST_PH_STEP = 0.05
+_STEP_SLACK = 1e-3
 
 # Factor from each written unit to the unit used inside.
 LENGTH = {"cm": 1.0, "mm": 0.1, "m": 100.0}
@@ -176,16 +177,16 @@ def pH_grid(low: float, high: float, step: float) -> np.ndarray:
         array([4., 5., 6.])
     """
     _check_span(low, high, step)
-    whole = int((high - low) / step + 1e-9)
-    rest = (high - low) - whole * step
-    grid = np.round(low + step * np.arange(whole + 1), 10)
-    if rest <= 1e-9:
-        return grid
-    if rest < step / 2:
+    steps = (high - low) / step
+    whole = round(steps) if abs(steps - round(steps)) < _STEP_SLACK else int(steps)
+    if abs(steps - whole) < _STEP_SLACK:
+        return np.round(np.linspace(low, high, whole + 1), 10)
+    if steps - whole < 0.5:
         fits = (high - low) / whole
         raise MixindError(
-            f"step: {step:g} does not fit pH {low:g} to {high:g}, {rest:.3g} is left over. Use {fits:.4g}.", fits=fits)
-    return np.append(grid, high)
+            f"step: {step:g} does not fit pH {low:g} to {high:g}, {(steps - whole) * step:.3g} is left over. Use {fits:.7g}.",
+            fits=fits)
+    return np.append(np.round(low + step * np.arange(whole + 1), 10), high)
 
 
 def _check_span(low: float, high: float, step: float) -> None:

@@ -37,7 +37,7 @@ class Band:
         """Return the decadic molar absorptivity at `wavelength` [nm], same shape [L mol-1 cm-1]."""
         offset = CM1_PER_NM / np.asarray(wavelength, dtype=float) - self.wavenumber
         if abs(self.skew - 1) < GAUSSIAN_LIMIT:
-            return self.height * np.exp(-4 * np.log(2) * (offset / self.fwhm) ** 2)
+            return np.asarray(self.height * np.exp(-4 * np.log(2) * (offset / self.fwhm) ** 2))
         argument = 1 + offset * (self.skew**2 - 1) / (self.fwhm * self.skew)
         inside = argument > 0
         logarithm = np.log(np.where(inside, argument, 1.0)) / np.log(self.skew)
@@ -82,7 +82,8 @@ def place_bands(bands: tuple[Band, ...], wavelength: float, absorptivity: float)
 def from_table(wavelength: list[float], absorptivity: list[float]) -> np.ndarray:
     """Return a tabulated spectrum on the grid of the library, (81,) [L mol-1 cm-1].
 
-    Between the rows a monotone cubic, which makes no bumps of its own; outside them the end value.
+    Rows on the grid are taken as they are; between rows a monotone cubic, which makes no bumps of its own; outside them
+    the end value.
 
     Args:
         wavelength: rising, at least 4 values, covering 400-700 nm [nm].
@@ -95,7 +96,9 @@ def from_table(wavelength: list[float], absorptivity: list[float]) -> np.ndarray
         raise MixindError("table: wavelengths must rise from row to row.")
     if wavelength[0] > 400 or wavelength[-1] < 700:
         raise MixindError(f"table: covers {wavelength[0]:g}-{wavelength[-1]:g} nm. Cover at least 400-700 nm.")
+    inside = np.clip(WAVELENGTH, wavelength[0], wavelength[-1])
+    if np.isin(inside, wavelength).all():
+        return np.asarray(np.array(absorptivity)[np.searchsorted(wavelength, inside)])
     from scipy.interpolate import PchipInterpolator
 
-    inside = np.clip(WAVELENGTH, wavelength[0], wavelength[-1])
     return np.asarray(PchipInterpolator(wavelength, absorptivity)(inside))

@@ -136,7 +136,8 @@ def weights_from_colour_science(illuminant: str, observer: str) -> np.ndarray:
     colour = colour_science()
     if illuminant not in colour.SDS_ILLUMINANTS:
         known = list(colour.SDS_ILLUMINANTS)
-        raise MixindError(f"light: {illuminant!r} is not known{nearest(illuminant, known) or '.'} Usual: {', '.join(ILLUMINANTS)}.")
+        usual = f"Usual: {', '.join(ILLUMINANTS)}."
+        raise MixindError(f"light: {illuminant!r} is not known{nearest(illuminant, known) or '.'} {usual}")
     functions = colour.MSDS_CMFS[OBSERVERS[observer]]
     lamp = colour.SDS_ILLUMINANTS[illuminant]
     at = np.asarray(functions.wavelengths, dtype=float)
@@ -147,14 +148,14 @@ def weights_from_colour_science(illuminant: str, observer: str) -> np.ndarray:
 
 
 def colour_science() -> Any:
-    """Return the module colour-science, whose import changes numpy's print options and warns of what it lacks; that is undone."""
+    """Return the module colour-science, undoing what its import does to numpy's print options and to the terminal."""
     import warnings
 
-    options = np.get_printoptions()
+    options: Any = np.get_printoptions()
     with warnings.catch_warnings():
         warnings.simplefilter("ignore")
         import colour
-    np.set_printoptions(**options)  # type: ignore[arg-type]
+    np.set_printoptions(**options)
     return colour
 
 

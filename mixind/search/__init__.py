@@ -1,0 +1,1 @@
+"""Search: which dyes and how much of each tell the steps apart best."""

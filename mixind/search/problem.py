@@ -15,6 +15,9 @@ from mixind.quantities import Dose
 from mixind.separation import dose_pairs
 from mixind.viewing import Vessel, Viewer
 
+_WITHOUT_COLOUR = 1e-4
+"""Most of a dye that absorbs nowhere in the visible [mol/L]."""
+
 
 @dataclass(frozen=True)
 class Task:
@@ -160,12 +163,13 @@ class Problem:
 def largest_concentration(task: Task, dye: Dye, absorptivity: np.ndarray) -> float:
     """Return the most of a dye the sample may hold at the nominal dose [mol/L].
 
-    Set by its peak absorbance over the pH span, and by solubility, aggregation and the like where the file says so.
+    Set by its peak absorbance over the pH span (of all its forms when it has no colour there), and by solubility,
+    aggregation and the like where the file says so.
 
     Args:
         absorptivity: of the dye over the span, (P, W) [L mol-1 cm-1].
     """
-    peak = float(dyes.visible_peak(absorptivity).max()) * task.vessel.optical_length
-    by_colour = task.peak_absorbance / peak if peak > 0 else np.inf
-    largest = min(by_colour, dye.largest_concentration)
-    return largest if np.isfinite(largest) else 0.0
+    own = [form.absorptivity for form in dye.forms]
+    peak = float(dyes.visible_peak(absorptivity).max()) or float(dyes.visible_peak(np.array(own)).max())
+    by_colour = task.peak_absorbance / (peak * task.vessel.optical_length) if peak > 0 else _WITHOUT_COLOUR
+    return min(by_colour, dye.largest_concentration)

@@ -14,7 +14,9 @@ from mixind.search.problem import Problem
 Progress = Callable[[str], None]
 
 _NEGLIGIBLE = 1e-4
-_ENTRY_SHARES = (0.1, 0.5)
+_ENTRY_SHARE = 0.3
+_SCREENING_ITERATIONS = 8
+_SCREENED = 6
 
 
 @dataclass(frozen=True)
@@ -46,31 +48,34 @@ def search(problem: Problem, choice: Choice, plan: Plan, seed: int, effort: Effo
         problem: of all candidates of `choice`, in its order.
         seed: the same seed gives the same mixture.
     """
-    best: Mixture | None = None
+    relaxed = []
     for rank, family in enumerate(choice.families()):
         progress(f"family {rank + 1}: {len(family)} dyes that go together")
-        for start in _relaxed(problem.restricted(family), plan, np.random.SeedSequence([seed, rank]), effort):
-            mixture = _pruned(problem, choice, family, start, effort)
-            mixture = _swapped(problem, choice, family, mixture, effort, progress)
-            best = _better(best, mixture)
-    assert best is not None
+        seeds = np.random.SeedSequence([seed, rank])
+        relaxed += [(found, family) for found in _relaxed(problem.restricted(family), plan, seeds, effort)]
+    best = Mixture((), np.zeros(0), -np.inf)
+    for start, family in sorted(relaxed, key=lambda pair: -pair[0].worst):
+        # what a family reaches without a limit on the number of dyes, it does not exceed with one
+        if start.worst > best.worst + TIE:
+            mixture = _pruned(problem, choice, family, start.x, effort)
+            best = _better(best, _swapped(problem, choice, family, mixture, effort, progress))
     polished = best_of_starts(
         problem.restricted(best.positions), np.random.SeedSequence([seed, 10**6]), plan.polish_starts, effort)
     return _better(best, Mixture(best.positions, polished.x, polished.worst))
 
 
-def _better(one: Mixture | None, other: Mixture) -> Mixture:
-    return other if one is None or other.worst > one.worst + TIE else one
+def _better(one: Mixture, other: Mixture) -> Mixture:
+    return other if other.worst > one.worst + TIE else one
 
 
-def _relaxed(problem: Problem, plan: Plan, seeds: np.random.SeedSequence, effort: Effort) -> list[np.ndarray]:
+def _relaxed(problem: Problem, plan: Plan, seeds: np.random.SeedSequence, effort: Effort) -> list[Found]:
     """Return the best distinct optima, without a limit on the number of dyes, best first."""
     found = [best_of_starts(problem, seed, 1, effort) for seed in seeds.spawn(plan.relaxed_starts)]
     distinct: list[Found] = []
     for one in sorted(found, key=lambda f: -f.worst):
         if all(np.abs(one.x - other.x).max() > 0.02 for other in distinct):
             distinct.append(one)
-    return [one.x for one in distinct[:plan.pruned]]
+    return distinct[:plan.pruned]
 
 
 def _pruned(problem: Problem, choice: Choice, family: Sequence[int], start: np.ndarray, effort: Effort) -> Mixture:
@@ -93,11 +98,12 @@ def _swapped(problem: Problem, choice: Choice, family: Sequence[int], mixture: M
              progress: Progress) -> Mixture:
     """Add dyes while there is room and exchange them one by one until no exchange helps."""
     while True:
+        screened = sorted(
+            (_climbed(problem, near, _carried(mixture, near), effort, _SCREENING_ITERATIONS)
+             for near in _neighbours(choice, family, mixture)), key=lambda m: -m.worst)
         better = mixture
-        for candidate in _neighbours(choice, family, mixture):
-            for entry in _ENTRY_SHARES:
-                found = _climbed(problem, candidate, _carried(mixture, candidate, entry), effort)
-                better = _better(better, found)
+        for near in screened[:_SCREENED]:
+            better = _better(better, _climbed(problem, near.positions, near.x, effort))
         if better is mixture:
             return mixture
         mixture = better
@@ -117,16 +123,17 @@ def _neighbours(choice: Choice, family: Sequence[int], mixture: Mixture) -> list
     return sets
 
 
-def _carried(mixture: Mixture, positions: Sequence[int], entry: float) -> np.ndarray:
-    """Return the shares of a mixture for another set of dyes; those that are new start at `entry`."""
+def _carried(mixture: Mixture, positions: Sequence[int]) -> np.ndarray:
+    """Return the shares of a mixture for another set of dyes."""
     shares = dict(zip(mixture.positions, mixture.x, strict=True))
-    return np.array([shares.get(p, entry) for p in positions])
+    return np.array([shares.get(p, _ENTRY_SHARE) for p in positions])
 
 
-def _climbed(problem: Problem, positions: Sequence[int], start: np.ndarray, effort: Effort) -> Mixture:
+def _climbed(problem: Problem, positions: Sequence[int], start: np.ndarray, effort: Effort,
+             most_iterations: int = 40) -> Mixture:
     part = problem.restricted(positions)
     start = start.copy()
     while score(part, start) == -np.inf and start.max() > 1e-3:
         start *= 0.8
-    found = climb(part, start, effort, most_iterations=40)
+    found = climb(part, start, effort, most_iterations)
     return Mixture(tuple(positions), found.x, found.worst)

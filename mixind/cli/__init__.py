@@ -1,0 +1,77 @@
+"""The command line: one file per command, each thin.
+
+This module is what starts, so it imports nothing but click; a command's module is imported when the command is used.
+"""
+
+from __future__ import annotations
+
+import os
+import sys
+from importlib import import_module
+from importlib.metadata import version
+from typing import Any, NoReturn
+
+# One thread for the linear algebra of small arrays: faster, and the same last digits on every machine of a kind.
+for _variable in ("OMP_NUM_THREADS", "OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS"):
+    os.environ.setdefault(_variable, "1")
+
+import click  # noqa: E402 - the environment has to be set first
+
+from mixind.errors import MixindError, NoAnswer  # noqa: E402
+
+COMMANDS = {
+    "formulate": ("formulate", "Find the blend that tells pH steps apart best."),
+    "predict": ("predict", "Show the colours of a blend over pH."),
+    "chart": ("chart", "Draw the chart of a blend to hang at the bench."),
+    "dye": ("dye", "List, show and check dyes."),
+}
+
+
+class LazyGroup(click.Group):
+    """A group whose commands are imported when they are used; faults of ours end as one line."""
+
+    def list_commands(self, ctx: click.Context) -> list[str]:
+        return list(COMMANDS)
+
+    def get_command(self, ctx: click.Context, cmd_name: str) -> click.Command | None:
+        if cmd_name not in COMMANDS:
+            return None
+        command: click.Command = import_module(f"mixind.cli.{COMMANDS[cmd_name][0]}").command
+        return command
+
+    def format_commands(self, ctx: click.Context, formatter: click.HelpFormatter) -> None:
+        with formatter.section("Commands"):
+            formatter.write_dl([(name, summary) for name, (_, summary) in COMMANDS.items()])
+
+    def main(self, *args: Any, **kwargs: Any) -> NoReturn:
+        """Run and exit: 0 done, 1 no answer, 2 bad input or wrong use, 130 interrupted; a closed pipe ends quietly."""
+        kwargs["standalone_mode"] = False
+        try:
+            result = super().main(*args, **kwargs)
+            sys.stdout.flush()
+            sys.exit(result if isinstance(result, int) else 0)
+        except BrokenPipeError:
+            # nobody reads on; keep the interpreter from flushing into the closed pipe once more
+            os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+            sys.exit(0)
+        except MixindError as error:
+            _complain(str(error), 1 if isinstance(error, NoAnswer) else 2)
+        except click.ClickException as error:
+            path = error.ctx.command_path if isinstance(error, click.UsageError) and error.ctx else "mixind"
+            _complain(f"{path}: {error.format_message()}", 2)
+        except (click.Abort, KeyboardInterrupt):
+            _complain("interrupted.", 130)
+
+
+def _complain(message: str, status: int) -> NoReturn:
+    click.echo(" ".join(message.split()), err=True)
+    sys.exit(status)
+
+
+@click.group(cls=LazyGroup, no_args_is_help=True, context_settings={"help_option_names": ["-h", "--help"]})
+@click.version_option(version("mixind"), message="mixind %(version)s")
+def main() -> None:
+    """Formulate pH indicators by computation: which dyes, how much, and what colour at each pH.
+
+    Example: mixind formulate --from 4 --to 10 --save my.toml --chart my.pdf
+    """

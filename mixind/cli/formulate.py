@@ -1,0 +1,143 @@
+"""mixind formulate"""
+
+from __future__ import annotations
+
+from importlib.metadata import version
+from itertools import product
+from pathlib import Path
+from typing import Any
+
+import click
+
+from mixind import quantities
+from mixind.blend import DEFAULT_DOSE, Blend, blend_text
+from mixind.cli import options, printing
+from mixind.conditions import Conditions
+from mixind.difference import METRICS
+from mixind.errors import MixindError, NoAnswer
+from mixind.files import check_target, write_whole
+from mixind.library import Library
+from mixind.prediction import Prediction, predict
+from mixind.search.candidates import Choice, choose
+from mixind.search.formulate import DEFAULT_DARKEST, DEFAULT_PEAK_ABSORBANCE, Formulation, formulate
+from mixind.search.problem import Task
+from mixind.search.subsets import PLANS
+from mixind.viewing import EYES, ILLUMINANTS, OBSERVERS
+
+
+@click.command()
+@click.option("--from", "low", type=float, required=True, metavar="PH", help="Lower end of the span.")
+@click.option("--to", "high", type=float, required=True, metavar="PH", help="Upper end of the span.")
+@click.option("--step", type=float, default=1.0, show_default=True, help="Smallest pH difference to tell apart.")
+@click.option("--most-dyes", type=int, default=4, show_default=True, metavar="N", help="Most dyes in the blend.")
+@click.option("--dyes", metavar="A,B,..", help="Use only these dyes.")
+@click.option("--with", "with_", multiple=True, metavar="DYE", help="Must be in the blend; may be repeated.")
+@click.option("--without", multiple=True, metavar="DYE", help="Must not be in the blend; may be repeated.")
+@click.option("--allow-ion-pairs", is_flag=True, help="Combine cationic with anionic dyes, which can precipitate.")
+@click.option("--dose", default=str(DEFAULT_DOSE), show_default=True, metavar="DOSE", help="Stock into sample.")
+@click.option("--dose-tolerance", default="20%", show_default=True, metavar="SHARE", help="How far the dose may be off.")
+@click.option("--darkest", type=float, default=DEFAULT_DARKEST, show_default=True, help="Least L* of a colour.")
+@click.option("--peak-absorbance", type=float, default=DEFAULT_PEAK_ABSORBANCE, show_default=True,
+              help="Most that one dye may absorb.")
+@options.sample_options
+@click.option("--light", multiple=True, metavar="LAMP", help=f"{', '.join(ILLUMINANTS)}, ..; may be repeated. [default: D65]")
+@click.option("--observer", type=click.Choice(list(OBSERVERS)), help="Degrees of field. [default: 2]")
+@click.option("--eyes", multiple=True, type=click.Choice(EYES), help="Colour vision; may be repeated. [default: normal]")
+@click.option("--severity", type=float, help="Of a colour vision deficiency, 0 to 1. [default: 1]")
+@options.metric_options
+@click.option("--effort", type=click.Choice(list(PLANS)), default="normal", show_default=True, help="How hard to search.")
+@click.option("--seed", type=int, default=1, show_default=True, help="Of the random starts.")
+@click.option("--save", type=click.Path(), metavar="FILE", help="Write the blend file.")
+@click.option("--chart", type=click.Path(), metavar="FILE", help="Draw the chart (pdf, svg or png).")
+@options.date_option
+@options.replace_option
+@options.library_option
+@options.json_option
+def command(as_json: bool, replace: bool, save: str | None, chart: str | None, date: str | None, **given: Any) -> None:
+    """Find the blend that tells the pH steps of a span apart best.
+
+    Example: mixind formulate --from 4 --to 10 --most-dyes 4 --save my.toml --chart my.pdf
+    """
+    targets = _check_targets(save, chart, replace)
+    choice = _choice(given)
+    conditions, task = _task(given)
+    threshold = options.chosen_threshold(given["metric"], given["threshold"])
+    found = formulate(task, choice, threshold, given["effort"], given["seed"], printing.progress)
+    blend = _titled(found, conditions[0])
+    prediction = predict(blend, task.pH, conditions[0])
+    if targets[0]:
+        write_whole(targets[0], blend_text(blend).encode(), replace)
+    if targets[1]:
+        from mixind import figures
+
+        figures.write_chart(targets[1], prediction, replace, date)
+    if as_json:
+        printing.as_json({"mixind": version("mixind"), "blend": blend.facts(), **found.facts(),
+                          "conditions": [c.facts() for c in conditions], "rows": prediction.rows()})
+    else:
+        _print(found, blend, prediction, choice)
+    if not found.told_apart:
+        raise NoAnswer(f"pH {found.worst.pair[0]:g} and {found.worst.pair[1]:g} are not told apart: separation "
+                       f"{found.worst.separation:.1f}, {threshold:g} needed. Try a coarser step, more dyes or a wider vessel.")
+
+
+def _check_targets(save: str | None, chart: str | None, replace: bool) -> tuple[Path | None, Path | None]:
+    from mixind.figures import check_suffix
+
+    if chart:
+        check_suffix(chart)
+    if save and chart and Path(save).resolve() == Path(chart).resolve():
+        raise MixindError(f"--save and --chart both name {save}. Choose two files.")
+    return check_target(save, replace) if save else None, check_target(chart, replace) if chart else None
+
+
+def _choice(given: dict[str, Any]) -> Choice:
+    only = [name.strip() for name in (given["dyes"] or "").split(",") if name.strip()]
+    return choose(Library(given["libraries"]), only, given["with_"], given["without"], given["most_dyes"],
+                  given["allow_ion_pairs"])
+
+
+def _task(given: dict[str, Any]) -> tuple[list[Conditions], Task]:
+    """Return the conditions, one per viewer, and the task."""
+    pH = quantities.pH_grid(given["low"], given["high"], given["step"])
+    if not 0 < given["peak_absorbance"] <= 10:
+        raise MixindError(f"--peak-absorbance {given['peak_absorbance']:g} is outside 0 to 10.")
+    if not 0 <= given["darkest"] <= 90:
+        raise MixindError(f"--darkest {given['darkest']:g} is outside 0 to 90.")
+    shared = {key: value for key, value in given.items() if key not in ("light", "eyes")}
+    stated = options.given_conditions(shared)
+    conditions = [Conditions(**stated, light=light, eyes=eyes)
+                  for light, eyes in product(given["light"] or ("D65",), given["eyes"] or ("normal",))]
+    metric = METRICS[given["metric"]]
+    first = conditions[0]
+    return conditions, Task(
+        pH, given["step"], first.solution(), first.make_vessel(), tuple(c.make_viewer() for c in conditions),
+        quantities.dose(given["dose"]), quantities.share(given["dose_tolerance"], "dose tolerance"), metric, metric.kL,
+        given["peak_absorbance"], given["darkest"])
+
+
+def _titled(found: Formulation, conditions: Conditions) -> Blend:
+    from dataclasses import replace
+
+    title = found.blend.title if found.told_apart else f"{found.blend.title}: NOT told apart, best effort"
+    kept = {"vessel": conditions.vessel, "path": conditions.path, "light": conditions.light, "observer": conditions.observer,
+            "eyes": conditions.eyes, "temperature": conditions.temperature, "ionic_strength": conditions.ionic_strength}
+    return replace(found.blend, title=title, conditions=kept)
+
+
+def _print(found: Formulation, blend: Blend, prediction: Prediction, choice: Choice) -> None:
+    printing.print_blend(blend)
+    printing.print_colours(prediction)
+    metric, kL = found.task.metric.name, found.task.kL
+    printing.print_separation(found.worst.separation, found.worst.pair, found.threshold, metric, kL)
+    if found.task.tolerance:
+        printing.result(f"  with the dose off by up to {found.task.tolerance:.0%}; {found.nominal.separation:.1f} at the exact "
+                        f"dose (pH {found.nominal.pair[0]:g} and {found.nominal.pair[1]:g})")
+    if len(found.by_viewer) > 1:
+        printing.table([[f"worst for {key}", f"{value:.1f}"] for key, value in found.by_viewer.items()])
+    printing.print_trust(prediction)
+    record = found.search
+    printing.result(f"Search: {record['candidates']} dyes, at most {choice.most}; {record['starts']} climbs, "
+                    f"{record['evaluations']} evaluations, {record['seconds']:.1f} s, seed {record['seed']}")
+    for name, reason in choice.left_out.items():
+        printing.remark(f"{name} was left out: {reason}")

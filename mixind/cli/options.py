@@ -1,0 +1,96 @@
+"""Options that several commands share, and how they become values of the library."""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from typing import Any, TypeVar
+
+import click
+
+from mixind.blend import Blend, read_blend
+from mixind.conditions import Conditions, differing
+from mixind.difference import METRICS
+from mixind.errors import MixindError
+from mixind.library import Library
+from mixind.quantities import path_length
+from mixind.viewing import EYES, ILLUMINANTS, OBSERVERS, VESSELS
+
+F = TypeVar("F", bound=Callable[..., Any])
+
+_CONDITION_KEYS = ("vessel", "path", "light", "observer", "eyes", "severity", "temperature", "ionic_strength", "aged")
+
+
+def _several(*options: Callable[[F], F]) -> Callable[[F], F]:
+    def decorate(command: F) -> F:
+        for option in reversed(options):
+            command = option(command)
+        return command
+    return decorate
+
+
+def sample_options(command: F) -> F:
+    """Add what the sample is and what holds it."""
+    return _several(
+        click.option("--vessel", type=click.Choice(list(VESSELS)), help="What holds the sample. [default: clear]"),
+        click.option("--path", metavar="LENGTH", help='Width of the vessel, such as "16 mm". [default: 1 cm]'),
+        click.option("--temperature", type=float, metavar="C", help="Of the sample. [default: 25]"),
+        click.option("--ionic-strength", type=float, metavar="MOL/L", help="Of the sample. [default: 0.1]"),
+        click.option("--aged", is_flag=True, default=None, help="Let slow steps (fading) come to rest."),
+    )(command)
+
+
+def viewer_options(command: F) -> F:
+    """Add lamp, observer and eye, one of each."""
+    return _several(
+        click.option("--light", metavar="LAMP", help=f"{', '.join(ILLUMINANTS)} or another CIE illuminant. [default: D65]"),
+        click.option("--observer", type=click.Choice(list(OBSERVERS)), help="Degrees of field. [default: 2]"),
+        click.option("--eyes", type=click.Choice(EYES), help="Colour vision. [default: normal]"),
+        click.option("--severity", type=float, help="Of a colour vision deficiency, 0 to 1. [default: 1]"),
+    )(command)
+
+
+def metric_options(command: F) -> F:
+    """Add how difference is measured."""
+    return _several(
+        click.option("--metric", type=click.Choice(list(METRICS)), default="ciede2000", show_default=True,
+                     help="How different two colours look."),
+        click.option("--threshold", type=float, help="Difference from which steps are told apart. [ciede2000: 3]"),
+    )(command)
+
+
+library_option = click.option(
+    "--library", "libraries", multiple=True, metavar="FOLDER", help="Folder with further dye files; may be repeated.")
+json_option = click.option("--json", "as_json", is_flag=True, help="Print JSON instead of text.")
+replace_option = click.option("--replace", is_flag=True, help="Overwrite files that exist.")
+date_option = click.option("--date", metavar="YYYY-MM-DD", help="Date on the page. [default: today]")
+
+
+def given_conditions(given: dict[str, Any]) -> dict[str, Any]:
+    """Return the conditions that were given on the command line, as keyword arguments of `Conditions`."""
+    stated = {key: given[key] for key in _CONDITION_KEYS if given.get(key) is not None}
+    if "path" in stated:
+        stated["path"] = path_length(stated["path"])
+    return stated
+
+
+def blend_and_conditions(path: str, libraries: tuple[str, ...], given: dict[str, Any]) -> tuple[Blend, Conditions, list[str]]:
+    """Return a blend, the conditions to look at it under, and remarks.
+
+    What the command line does not give is taken from the blend's own conditions, then from the defaults.
+    """
+    blend = read_blend(path, Library(libraries))
+    conditions = Conditions(**{**blend.conditions, **given_conditions(given)})
+    return blend, conditions, [*blend.remarks, *differing(conditions, dict(blend.conditions))]
+
+
+def chosen_threshold(metric: str, threshold: float | None) -> float:
+    """Return the threshold given, or that of the metric.
+
+    Raises: MixindError when it is not above zero, or the metric has none and none is given.
+    """
+    value = METRICS[metric].threshold if threshold is None else threshold
+    if value is None:
+        raise MixindError(f"--metric {metric} has no threshold of its own. Give --threshold.")
+    if not 0 < value < float("inf"):
+        raise MixindError(f"--threshold {value} is not above zero.")
+    return value

@@ -1,0 +1,138 @@
+"""Text for the terminal: swatches, tables of colours, and how far to trust them."""
+
+from __future__ import annotations
+
+import json
+import os
+import sys
+from collections.abc import Iterable
+from typing import Any
+
+import click
+
+from mixind.blend import Blend, mg_per_litre
+from mixind.difference import PRINTED_CHART_THRESHOLD
+from mixind.prediction import Prediction
+from mixind.quantities import significant
+
+MODEL_REMARK = ("not modelled: the sample's own colour and turbidity, chlorine, proteins and metals, dimers of dyes, "
+                "the acid of the indicator itself in a weakly buffered sample")
+VALID_TEMPERATURE = "pH colours hold at the stated temperature +- 5 C"
+
+
+def result(text: str = "") -> None:
+    """Print a line of the result to stdout."""
+    click.echo(text)
+
+
+def remark(text: str) -> None:
+    """Print a remark to stderr."""
+    click.echo(f"note: {text}", err=True)
+
+
+def progress(text: str) -> None:
+    """Print progress to stderr when somebody watches."""
+    if sys.stderr.isatty():
+        click.echo(f"  {text}", err=True)
+
+
+def as_json(facts: dict[str, Any]) -> None:
+    """Print facts as JSON."""
+    click.echo(json.dumps(facts, indent=1, ensure_ascii=False, allow_nan=False))
+
+
+def colour_terminal() -> bool:
+    """Return whether stdout is a terminal that shows 24-bit colours and may be used so (NO_COLOR is obeyed)."""
+    truecolour = os.environ.get("COLORTERM", "") in ("truecolor", "24bit")
+    return sys.stdout.isatty() and truecolour and not os.environ.get("NO_COLOR")
+
+
+def swatch(hex_colour: str, width: int = 6) -> str:
+    """Return blanks on the colour for a terminal that has it, else nothing."""
+    if not colour_terminal():
+        return ""
+    red, green, blue = (int(hex_colour[i:i + 2], 16) for i in (1, 3, 5))
+    return f"\x1b[48;2;{red};{green};{blue}m{' ' * width}\x1b[0m "
+
+
+def table(rows: Iterable[Iterable[str]], indent: str = "  ") -> None:
+    """Print rows in columns; a cell that starts with a digit or sign is set to the right."""
+    cells = [list(row) for row in rows]
+    widths = [max(len(cell) for cell in column) for column in zip(*cells, strict=True)]
+    for row in cells:
+        shown = [cell.rjust(w) if cell[:1] in "0123456789+-." and cell else cell.ljust(w)
+                 for cell, w in zip(row, widths, strict=True)]
+        result((indent + "  ".join(shown)).rstrip())
+
+
+def print_blend(blend: Blend) -> None:
+    """Print what goes into the stock and how it is dosed."""
+    result(f"Blend: {blend.title}")
+    rows = [["dye", "% w/v", "mg/L of stock", "umol/L in sample", "grade"]]
+    for component, concentration in zip(blend.components, blend.sample_concentrations(), strict=True):
+        form = f" ({component.form})" if component.form else ""
+        rows.append([component.dye.name + form, significant(component.grams_per_litre / 10), mg_per_litre(component),
+                     significant(concentration * 1e6), component.dye.grade])
+    table(rows)
+    result(f"  dose: {blend.dose}, {blend.dose.in_drops()}")
+
+
+def print_colours(prediction: Prediction) -> None:
+    """Print one line per pH: colour in words, hex, L*a*b*, uncertainty and grade."""
+    result(f"Colours: {prediction.conditions.describe()}")
+    rows = [["pH", "colour", "hex", "L*", "a*", "b*", "+- dE00", "next dE00", "grade"]]
+    for row in prediction.rows():
+        L, a, b = (f"{value:.1f}" for value in row["Lab"])
+        mapped = "" if row["in_gamut"] else "*"
+        following = "" if row["dE00_next"] is None else f"{row['dE00_next']:.1f}"
+        rows.append([f"{row['pH']:.2f}".rstrip("0").rstrip("."), row["colour"], row["hex"] + mapped, L, a, b,
+                     f"{row['sd_dE00']:.1f}", following, row["grade"]])
+    if colour_terminal():
+        _table_with_swatches(rows)
+    else:
+        table(rows)
+    if not prediction.patch.in_gamut.all():
+        result(f"  * outside sRGB: shown with less chroma, dE00 up to {prediction.patch.cost.max():.1f} from the true colour")
+
+
+def _table_with_swatches(rows: list[list[str]]) -> None:
+    widths = [max(len(row[i]) for row in rows) for i in range(len(rows[0]))]
+    for row in rows:
+        block = swatch(row[2].rstrip("*")) if row[2].startswith("#") else " " * 7
+        result("  " + block + "  ".join(cell.ljust(w) for cell, w in zip(row, widths, strict=True)).rstrip())
+
+
+def print_separation(separation: float, pair: tuple[float, float], threshold: float, metric: str, kL: float) -> None:
+    """Print the weakest step and what that means side by side and against a printed chart."""
+    weight = f", kL {kL:g}" if metric == "ciede2000" else ""
+    result(f"Worst pair: pH {pair[0]:g} and {pair[1]:g}, separation {separation:.1f} ({metric.upper()}{weight})")
+    if metric == "ciede2000":
+        readings = [f"{'told apart' if separation >= limit else 'NOT told apart'} {how} (from {limit:g})"
+                    for how, limit in (("side by side", threshold), ("against a printed chart", PRINTED_CHART_THRESHOLD))]
+        result(f"  {'; '.join(readings)}")
+
+
+def print_trust(prediction: Prediction) -> None:
+    """Print how far the colours can be trusted, and why."""
+    grades = sorted(set(prediction.grades))
+    about = {"A": "independent sources agree", "B": "one source", "C": "memory, analogy or a guessed band shape"}
+    result("How far to trust it")
+    for grade in grades:
+        at = [f"{pH:g}" for pH, g in zip(prediction.pH, prediction.grades, strict=True) if g == grade]
+        result(f"  grade {grade} ({about[grade]}): pH {', '.join(at)}")
+    result(f"  colours are known to about +- {prediction.sd_dE00.max():.1f} dE00 (standard uncertainty, largest of the ladder):"
+           " check the batch with three buffers")
+    result(f"  {VALID_TEMPERATURE}")
+    for dye in prediction.blend.dyes:
+        for limit in dye.limits:
+            result(f"  {dye.name}: {limit.kind}: {limit.text}")
+    result(f"  {MODEL_REMARK}")
+    print_hazards(prediction.blend)
+
+
+def print_hazards(blend: Blend) -> None:
+    """Print the hazards of the dyes, and who decides."""
+    for dye in blend.dyes:
+        codes = ", ".join(hazard.code for hazard in dye.hazards) or "not assessed here, which does not mean safe"
+        result(f"  hazards of {dye.name}: {codes}")
+    result("  the safety data sheet, local codes and licensed practice decide; ethanol is flammable, alkali is caustic")
