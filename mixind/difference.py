@@ -73,12 +73,14 @@ class _Terms:
 
     def _hue(self) -> None:
         (a1, a2), (b1, b2), product = self.a, self.b, self.C[0] * self.C[1]
-        both = product + a1 * a2 + b1 * b2
+        cross, dot = a1 * b2 - a2 * b1, a1 * a2 + b1 * b2
+        # C1 C2 + dot, written so that it does not cancel for nearly opposite hues
+        both = np.where(dot < 0, cross * cross / (product + np.abs(dot)), product + dot)
         self.opposite = both <= _OPPOSITE * product
         bisector = self.unit[0] + self.unit[1]
         self.both = np.maximum(both, _TINY)
         self.root = np.sqrt(2 / self.both)
-        self.dH = (a1 * b2 - a2 * b1) * self.root
+        self.dH = cross * self.root
         self.some_opposite = bool(self.opposite.any())
         if self.some_opposite:
             # the standard's mean of two opposite angles lies a quarter turn on from the smaller one

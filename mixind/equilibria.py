@@ -45,15 +45,15 @@ def debye_hueckel_slope(temperature: float = REFERENCE_TEMPERATURE) -> float:
 
     Args:
         temperature: 0 to 100 [C].
-    Source: A = 1.8246e6 (eps T)^-1.5 (Stumm and Morgan, Aquatic Chemistry, 3rd ed. 1996, table 3.3, from memory);
+    Source: A = 1.82e6 (eps T)^-1.5 (Stumm and Morgan, Aquatic Chemistry, 3rd ed. 1996, table 3.3, from memory);
         permittivity of water, Malmberg and Maryott, J. Res. Natl. Bur. Stand. 56 (1956) 1, eq. 2 (from memory).
     Example:
         >>> round(debye_hueckel_slope(25.0), 3)
-        0.511
+        0.51
     """
     t = temperature
     permittivity = 87.740 - 0.40008 * t + 9.398e-4 * t**2 - 1.410e-6 * t**3
-    return float(1.8246e6 * (permittivity * (t + ZERO_CELSIUS)) ** -1.5)
+    return float(1.82e6 * (permittivity * (t + ZERO_CELSIUS)) ** -1.5)
 
 
 def davies(ionic_strength: float, temperature: float = REFERENCE_TEMPERATURE) -> float:

@@ -8,6 +8,7 @@ from typing import Any
 
 import numpy as np
 
+from mixind import dyes
 from mixind.blend import Blend, blend_of
 from mixind.errors import MixindError
 from mixind.search.candidates import Choice
@@ -22,6 +23,8 @@ DEFAULT_DARKEST = 30.0
 DEFAULT_DOSE_TOLERANCE = 0.2
 
 _NEGLIGIBLE_SHARE = 1e-3
+_COLOURLESS = 1e-3
+"""Peak absorbance per cm below which nothing is seen."""
 
 
 @dataclass(frozen=True)
@@ -77,7 +80,7 @@ def formulate(task: Task, choice: Choice, threshold: float, effort: str = "norma
         raise MixindError(f"effort: {effort!r} is not one of {', '.join(PLANS)}.")
     begun, spent = time.perf_counter(), Effort()
     problem = Problem(task, choice.dyes)
-    if not np.any(problem.full > 0):
+    if dyes.visible_peak(problem.full).max() < _COLOURLESS:
         raise MixindError("none of the dyes has a colour in this span. Allow others.")
     mixture = search(problem, choice, PLANS[effort], seed, spent, progress)
     blend = _weighable(problem, mixture.positions, mixture.x, choice)
