@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 from collections.abc import Iterable
-from difflib import get_close_matches
 
 
 class MixindError(ValueError):
@@ -24,6 +23,8 @@ class NoAnswer(MixindError):
 
 def nearest(word: str, known: Iterable[str], most: int = 3) -> str:
     """Return "; did you mean a, b?" for the known words nearest to `word`, or "" when none is near."""
+    from difflib import get_close_matches  # only faults need it
+
     by_folded = {name.casefold(): name for name in known}
     found = get_close_matches(word.casefold(), list(by_folded), n=most, cutoff=0.6)
     return f"; did you mean {', '.join(by_folded[name] for name in found)}?" if found else ""

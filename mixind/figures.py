@@ -11,7 +11,6 @@ import io
 import os
 from dataclasses import dataclass, field, replace
 from functools import lru_cache
-from importlib.metadata import version
 from pathlib import Path
 from typing import Any
 
@@ -23,6 +22,7 @@ from mixind.errors import MixindError
 from mixind.files import check_target, write_whole
 from mixind.prediction import Prediction, predict
 from mixind.quantities import significant
+from mixind.version import VERSION
 from mixind.viewing import SIMULATION_REMARK
 
 PAPERS = {"a4": (210.0, 297.0), "letter": (215.9, 279.4)}
@@ -277,7 +277,7 @@ def _foot(page: _Page, prediction: Prediction, date: str) -> None:
     page.line((_MARGIN, page.width - _MARGIN), (y + 4, y + 4))
     _blend_table(page, prediction, _MARGIN, y, middle - _MARGIN - 6)
     _reading(page, prediction, middle, y, page.width - _MARGIN - middle)
-    about = (f"mixind {version('mixind')} · {date} · dye data {prediction.blend.digest()} · reprint: mixind chart BLEND "
+    about = (f"mixind {VERSION} · {date} · dye data {prediction.blend.digest()} · reprint: mixind chart BLEND "
              f"OUT.pdf --date {date}, at 100 % size, colours unmanaged or sRGB")
     page.text(_MARGIN, 9, about, 6, page.width - 2 * _MARGIN, color=_FAINT)
 

@@ -5,7 +5,6 @@ from __future__ import annotations
 import math
 import os
 import sys
-import tempfile
 import tomllib
 from collections.abc import Iterable, Iterator
 from pathlib import Path
@@ -186,6 +185,8 @@ def write_whole(path: str | Path, content: bytes, replace: bool) -> None:
 
     Raises: MixindError as `check_target`, or when the disk or the rights do not allow it.
     """
+    import tempfile  # only writing needs it
+
     path = check_target(path, replace)
     temporary = None
     try:

@@ -31,7 +31,7 @@ def test_the_worst_pair_is_found_across_doses() -> None:
 
 
 def test_matrix_and_pairs_agree() -> None:
-    Lab = np.random.default_rng(0).uniform(-50, 50, (6, 3)) + [50, 0, 0]
+    Lab = np.random.default_rng(0).uniform(-50, 50, (6, 3)) + np.array([50, 0, 0])
     matrix = separation_matrix(Lab, METRIC, 2.0)
     pairs = step_pairs(np.arange(6.0), 1.0)
     np.testing.assert_allclose(matrix[pairs[:, 0], pairs[:, 1]], separations(Lab, pairs, METRIC, 2.0))

@@ -8,7 +8,6 @@ from __future__ import annotations
 import os
 import sys
 from importlib import import_module
-from importlib.metadata import version
 from typing import Any, NoReturn
 
 # One thread for the linear algebra of small arrays: faster, and the same last digits on every machine of a kind.
@@ -18,6 +17,7 @@ for _variable in ("OMP_NUM_THREADS", "OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS"):
 import click  # noqa: E402 - the environment has to be set first
 
 from mixind.errors import MixindError, NoAnswer  # noqa: E402
+from mixind.version import VERSION  # noqa: E402
 
 COMMANDS = {
     "formulate": ("formulate", "Find the blend that tells pH steps apart best."),
@@ -43,17 +43,23 @@ class LazyGroup(click.Group):
         with formatter.section("Commands"):
             formatter.write_dl([(name, summary) for name, (_, summary) in COMMANDS.items()])
 
+    def invoke(self, ctx: click.Context) -> Any:
+        """Run a command; when nobody reads its output on, stop quietly."""
+        try:
+            result = super().invoke(ctx)
+            sys.stdout.flush()
+            return result
+        except BrokenPipeError:
+            # keep the interpreter from flushing into the closed pipe once more
+            os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+            return 0
+
     def main(self, *args: Any, **kwargs: Any) -> NoReturn:
         """Run and exit: 0 done, 1 no answer, 2 bad input or wrong use, 130 interrupted; a closed pipe ends quietly."""
         kwargs["standalone_mode"] = False
         try:
             result = super().main(*args, **kwargs)
-            sys.stdout.flush()
             sys.exit(result if isinstance(result, int) else 0)
-        except BrokenPipeError:
-            # nobody reads on; keep the interpreter from flushing into the closed pipe once more
-            os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
-            sys.exit(0)
         except MixindError as error:
             _complain(str(error), 1 if isinstance(error, NoAnswer) else 2)
         except click.ClickException as error:
@@ -69,7 +75,7 @@ def _complain(message: str, status: int) -> NoReturn:
 
 
 @click.group(cls=LazyGroup, no_args_is_help=True, context_settings={"help_option_names": ["-h", "--help"]})
-@click.version_option(version("mixind"), message="mixind %(version)s")
+@click.version_option(VERSION, message="mixind %(version)s")
 def main() -> None:
     """Formulate pH indicators by computation: which dyes, how much, and what colour at each pH.
 

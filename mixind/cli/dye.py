@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from importlib.metadata import version
 from typing import Any
 
 import click
@@ -13,6 +12,7 @@ from mixind.dyes import Dye
 from mixind.equilibria import DEFAULT_IONIC_STRENGTH, Solution
 from mixind.library import Library
 from mixind.quantities import significant
+from mixind.version import VERSION
 
 
 @click.group(no_args_is_help=True)
@@ -33,7 +33,7 @@ def list_(libraries: tuple[str, ...], as_json: bool) -> None:
     """
     dyes = Library(libraries).all()
     if as_json:
-        printing.as_json({"mixind": version("mixind"), "dyes": [facts(dye) for dye in dyes]})
+        printing.as_json({"mixind": VERSION, "dyes": [facts(dye) for dye in dyes]})
         return
     rows = [["dye", "pKa (I = 0.1)", "interval", "colours", "ion", "grade", "hazards"]]
     rows += [_listed(dye) for dye in dyes]
@@ -71,7 +71,7 @@ def show(name: str, libraries: tuple[str, ...], as_json: bool) -> None:
     """
     dye = Library(libraries).find(name)
     if as_json:
-        printing.as_json({"mixind": version("mixind"), **facts(dye)})
+        printing.as_json({"mixind": VERSION, **facts(dye)})
         return
     _show_identity(dye)
     _show_steps(dye)

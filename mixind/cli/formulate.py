@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from importlib.metadata import version
 from itertools import product
 from pathlib import Path
 from typing import Any
@@ -22,6 +21,7 @@ from mixind.search.candidates import Choice, choose
 from mixind.search.formulate import DEFAULT_DARKEST, DEFAULT_PEAK_ABSORBANCE, Formulation, formulate
 from mixind.search.problem import Task
 from mixind.search.subsets import PLANS
+from mixind.version import VERSION
 from mixind.viewing import EYES, ILLUMINANTS, OBSERVERS
 
 
@@ -72,7 +72,7 @@ def command(as_json: bool, replace: bool, save: str | None, chart: str | None, d
 
         figures.write_chart(targets[1], prediction, replace, date)
     if as_json:
-        printing.as_json({"mixind": version("mixind"), "blend": blend.facts(), **found.facts(),
+        printing.as_json({"mixind": VERSION, "blend": blend.facts(), **found.facts(),
                           "conditions": [c.facts() for c in conditions], "rows": prediction.rows()})
     else:
         _print(found, blend, prediction, choice)

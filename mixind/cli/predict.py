@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-from importlib.metadata import version
 from typing import Any
 
 import click
@@ -11,6 +10,7 @@ from mixind.cli import options, printing
 from mixind.difference import METRICS
 from mixind.prediction import predict
 from mixind.quantities import pH_series
+from mixind.version import VERSION
 
 
 @click.command()
@@ -33,7 +33,7 @@ def command(blend: str, span: str, metric: str, threshold: float | None, librari
     found = predict(read, pH, conditions)
     if as_json:
         printing.as_json({
-            "mixind": version("mixind"), "blend": read.facts(), "conditions": conditions.facts(), "rows": found.rows(),
+            "mixind": VERSION, "blend": read.facts(), "conditions": conditions.facts(), "rows": found.rows(),
             "separation": found.separation(metric).round(4).tolist(), "metric": metric, "remarks": remarks})
         return
     for text in remarks:

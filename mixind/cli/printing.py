@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import json
 import os
 import sys
 from collections.abc import Iterable
@@ -38,6 +37,8 @@ def progress(text: str) -> None:
 
 def as_json(facts: dict[str, Any]) -> None:
     """Print facts as JSON."""
+    import json
+
     click.echo(json.dumps(facts, indent=1, ensure_ascii=False, allow_nan=False))
 
 

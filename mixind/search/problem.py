@@ -94,13 +94,14 @@ class Problem:
         return np.concatenate(parts), self._lightness(XYZ)
 
     def _light(self, x: np.ndarray) -> np.ndarray:
-        absorbance = np.tensordot(x, self.full, axes=1)
+        """Return the light at each dose and pH, (D, P, W)."""
+        absorbance = (x @ self.full.reshape(x.size, -1)).reshape(self.full.shape[1:])
         return self.task.vessel.light(self.factors[:, None, None] * absorbance)
 
     def _by_viewer(self, XYZ: np.ndarray) -> np.ndarray:
         """Return (..., D, P, 3V) as (V, ..., D * P, 3)."""
-        shape = (*XYZ.shape[:-3], XYZ.shape[-3] * XYZ.shape[-2], len(self.task.viewers), 3)
-        return np.moveaxis(XYZ.reshape(shape), -2, 0)
+        shaped = XYZ.reshape(*XYZ.shape[:-3], XYZ.shape[-3] * XYZ.shape[-2], len(self.task.viewers), 3)
+        return shaped.transpose(shaped.ndim - 2, *range(shaped.ndim - 2), shaped.ndim - 1)
 
     def _lightness(self, XYZ: np.ndarray) -> np.ndarray:
         P = self.task.pH.size
@@ -143,7 +144,7 @@ class Problem:
         for v, viewer in enumerate(task.viewers):
             point, by_XYZ = task.metric.space_and_jacobian(XYZ[v], viewer.white)
             points.append(point)
-            jacobians.append(by_XYZ @ np.moveaxis(dXYZ[v], 0, -1))
+            jacobians.append(by_XYZ @ dXYZ[v].transpose(1, 2, 0))
         point, jacobian = np.concatenate(points), np.concatenate(jacobians)
         one, two = pairs[:, 0], pairs[:, 1]
         value, by_one, by_two = task.metric.difference_and_slopes(point[one], point[two], task.kL)
@@ -156,7 +157,7 @@ class Problem:
         P = self.task.pH.size
         at = slice(self.nominal * P, (self.nominal + 1) * P)
         Y = np.maximum(XYZ[:, at, 1], 1e-9).ravel()
-        dY = np.moveaxis(dXYZ[:, :, at, 1], 1, -1).reshape(Y.size, -1)
+        dY = dXYZ[:, :, at, 1].transpose(0, 2, 1).reshape(Y.size, -1)
         return 116 * np.cbrt(Y) - 16 - self.task.darkest, (116 / 3) * (Y ** (-2 / 3))[:, None] * dY
 
 
