@@ -24,7 +24,7 @@ _T_TERMS = np.array([_T_TERMS, _T_TERMS * np.arange(1, 5)])
 
 # At or below this share of C1 C2 the hues count as exactly opposite (or a colour as having none).
 _OPPOSITE = 1e-13
-_TINY = 1e-300
+_TINY = 1e-150
 
 
 def ciede2000(Lab1: np.ndarray, Lab2: np.ndarray, kL: float = DEFAULT_KL) -> np.ndarray:

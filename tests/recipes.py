@@ -17,7 +17,7 @@ from mixind.search.formulate import DEFAULT_DARKEST, DEFAULT_PEAK_ABSORBANCE
 from mixind.search.problem import Problem, Task
 from tests import published
 
-DOSES = np.geomspace(0.005, 3.0, 400)
+DOSES = np.geomspace(0.02, 3.0, 1000)
 """Doses tried for each recipe [mL in 10 mL]."""
 
 

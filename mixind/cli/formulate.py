@@ -135,6 +135,7 @@ def _print(found: Formulation, blend: Blend, prediction: Prediction, choice: Cho
                         f"dose (pH {found.nominal.pair[0]:g} and {found.nominal.pair[1]:g})")
     if len(found.by_viewer) > 1:
         printing.table([[f"worst for {key}", f"{value:.1f}"] for key, value in found.by_viewer.items()])
+    printing.print_dissolving(blend)
     printing.print_trust(prediction)
     record = found.search
     printing.result(f"Search: {record['candidates']} dyes, at most {choice.most}; {record['starts']} climbs, "

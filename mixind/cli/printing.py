@@ -131,6 +131,15 @@ def print_trust(prediction: Prediction) -> None:
     print_hazards(prediction.blend)
 
 
+def print_dissolving(blend: Blend) -> None:
+    """Print how each dye of a blend is usually brought into solution."""
+    result("How the dyes are usually dissolved")
+    for dye in blend.dyes:
+        made = dye.make_up
+        alkali = f", {made.alkali} of NaOH" if made and made.alkali not in ("", "none") else ""
+        result(f"  {dye.name}: {made.solvent if made and made.solvent else 'not known here'}{alkali}")
+
+
 def print_hazards(blend: Blend) -> None:
     """Print the hazards of the dyes, and who decides."""
     for dye in blend.dyes:
