@@ -25,6 +25,7 @@ _T_TERMS = np.array([_T_TERMS, _T_TERMS * np.arange(1, 5)])
 # At or below this share of C1 C2 the hues count as exactly opposite (or a colour as having none).
 _OPPOSITE = 1e-13
 _TINY = 1e-150
+"""Keeps a colour without chroma from dividing by zero; its hue then counts as none."""
 
 
 def ciede2000(Lab1: np.ndarray, Lab2: np.ndarray, kL: float = DEFAULT_KL) -> np.ndarray:
@@ -85,9 +86,9 @@ class _Terms:
         if self.some_opposite:
             # the standard's mean of two opposite angles lies a quarter turn on from the smaller one
             upper = 1j * np.where(b1 > 0, self.unit[0], self.unit[1])
-            bisector = np.where(self.opposite, upper + (upper == 0), bisector)
+            bisector = np.where(self.opposite, upper, bisector)
             self.dH = np.where(self.opposite, 2 * np.sqrt(product), self.dH)
-        self.z = bisector / np.abs(bisector)
+        self.z = bisector / (np.abs(bisector) + _TINY)
 
     def _weights(self, u: np.ndarray) -> None:
         z2 = self.z * self.z
