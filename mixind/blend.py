@@ -16,7 +16,7 @@ from mixind.dyes import Dye
 from mixind.errors import MixindError
 from mixind.files import Table, parse_toml, read_bytes, toml_text
 from mixind.library import Library
-from mixind.quantities import Dose, Strength, dose, share, significant, strength
+from mixind.quantities import Dose, Strength, dose, pH_series, share, significant, strength
 
 DEFAULT_DOSE = Dose(0.2, 10.0)
 
@@ -73,6 +73,7 @@ class Blend:
         dose: stock into sample.
         components: at least one; each dye once.
         conditions: what the blend file states, as keyword arguments of `Conditions`; may be empty.
+        span: pH it is meant for, as `quantities.pH_series` reads it, such as "4:10:1"; "" when not stated.
         solvent, alkali, stock_ph: how the stock is made up, "" or None when not stated.
         remarks: what the maker has to know, printed with every answer.
     """
@@ -81,6 +82,7 @@ class Blend:
     dose: Dose
     components: tuple[Component, ...]
     conditions: Mapping[str, Any] = field(default_factory=dict)
+    span: str = ""
     solvent: str = ""
     alkali: str = ""
     stock_ph: float | None = None
@@ -110,6 +112,16 @@ class Blend:
             {"dye": c.dye.name, "strength_mg_per_L": round(c.grams_per_litre * 1e3, 6),
              "strength_umol_per_L": round(c.moles_per_litre * 1e6, 6), "grade": c.dye.grade} for c in self.components]}
 
+    def beyond_limits(self) -> list[str]:
+        """Return a remark for each dye of which the sample gets more than dissolves or than the model holds for."""
+        remarks = []
+        for dye, concentration in zip(self.dyes, self.sample_concentrations(), strict=True):
+            for limit in dye.limits:
+                if limit.concentration is not None and concentration > limit.concentration * (1 + 1e-6):
+                    remarks.append(f"{dye.name}: {significant(concentration * 1e6)} umol/L in the sample, "
+                                   f"{limit.concentration * 1e6:g} umol/L allowed: {limit.kind}: {limit.text}")
+        return remarks
+
     def digest(self) -> str:
         """Return twelve hexadecimal digits that change when the data of one of the dyes changes."""
         return hashlib.sha256("".join(dye.digest for dye in self.dyes).encode()).hexdigest()[:12]
@@ -134,7 +146,7 @@ def read_blend(path: str | Path, library: Library) -> Blend:
     stock_ph = table.number("stock_ph", -1, 15, None)
     stated: dict[str, Any] = {
         "title": table.text("title", "untitled blend"), "conditions": read_conditions(table.table("conditions")),
-        "solvent": table.text("solvent", ""), "alkali": table.text("alkali", ""), "remarks": table.texts("remarks")}
+        "span": _span(table), "solvent": table.text("solvent", ""), "alkali": table.text("alkali", ""), "remarks": table.texts("remarks")}
     made_for = DEFAULT_DOSE
     try:
         made_for = dose(written_dose)
@@ -145,6 +157,17 @@ def read_blend(path: str | Path, library: Library) -> Blend:
     table.close()
     table.finish()
     return Blend(dose=made_for, components=tuple(c for c in components if c), stock_ph=stock_ph, **stated)
+
+
+def _span(table: Table) -> str:
+    """Return the pH span a blend file states, "" when it states none."""
+    written = table.text("ph", "")
+    try:
+        if written:
+            pH_series(written)
+    except MixindError as error:
+        table.faults.append(f"{table.where}: {error}")
+    return written or ""
 
 
 def _component(table: Table, library: Library) -> Component | None:
@@ -163,6 +186,7 @@ def _component(table: Table, library: Library) -> Component | None:
 def blend_text(blend: Blend) -> str:
     """Return a blend as the text of a blend file, strengths in mg/L with the digits they carry."""
     lines = [f"title = {toml_text(blend.title)}", f'dose = "{blend.dose}"']
+    lines += [f"ph = {toml_text(blend.span)}"] if blend.span else []
     lines += [f"{key} = {toml_text(value)}" for key, value in (("solvent", blend.solvent), ("alkali", blend.alkali)) if value]
     if blend.stock_ph is not None:
         lines.append(f"stock_ph = {blend.stock_ph:g}")

@@ -6,17 +6,21 @@ import numpy as np
 
 # Upper end of each hue range, CIELAB hue angle under the viewer's white [degrees], starting from 0. Our own division,
 # set so that saturated colours are called what painters and chemists call them.
-HUES = ((20, "rose-red"), (44, "red"), (58, "orange-red"), (72, "orange"), (86, "yellow-orange"), (106, "yellow"),
+HUES = ((20, "crimson"), (44, "red"), (58, "orange-red"), (72, "orange"), (86, "yellow-orange"), (106, "yellow"),
         (130, "yellow-green"), (172, "green"), (220, "blue-green"), (280, "blue"), (300, "indigo"), (328, "violet"),
-        (346, "purple"), (360, "rose-red"))
+        (346, "purple"), (360, "crimson"))
+
+# What a light purple, crimson or pale red is called.
+PINK_HUES, PINK_LIGHTNESS = ("purple", "crimson"), 65.0
 
 # Position of each hue word on the way through the rainbow, for saying how many steps two words lie apart: the seven
 # words that printed tables use (red, orange, yellow, green, blue, indigo, violet) stand one step apart.
-RAINBOW = {"rose-red": -0.5, "red": 0.0, "orange-red": 0.5, "orange": 1.0, "yellow-orange": 1.5, "yellow": 2.0,
-           "yellow-green": 2.5, "green": 3.0, "blue-green": 3.5, "blue": 4.0, "indigo": 5.0, "violet": 6.0, "purple": 6.5}
+RAINBOW = {"crimson": -0.25, "red": 0.0, "orange-red": 0.5, "orange": 1.0, "yellow-orange": 1.5, "yellow": 2.0,
+           "yellow-green": 2.5, "green": 3.0, "blue-green": 3.5, "blue": 4.0, "indigo": 5.0, "violet": 6.0, "purple": 6.25,
+           "pink": 6.5}
 
 COLOURLESS_CHROMA, COLOURLESS_LIGHTNESS = 4.0, 92.0
-GREY_CHROMA = 7.0
+GREY_CHROMA = 9.0
 PALE_CHROMA, PALE_LIGHTNESS = 28.0, 72.0
 DULL_CHROMA = 16.0
 DARK_LIGHTNESS, BLACK_LIGHTNESS = 42.0, 12.0
@@ -28,7 +32,7 @@ def hue_word(hue: float) -> str:
 
     Example:
         >>> hue_word(95.0), hue_word(-5.0)
-        ('yellow', 'rose-red')
+        ('yellow', 'crimson')
     """
     angle = hue % 360
     return next(word for end, word in HUES if angle < end or end == 360)
@@ -52,7 +56,9 @@ def colour_word(Lab: np.ndarray) -> str:
     if chroma < GREY_CHROMA:
         return "pale grey" if L > PALE_LIGHTNESS else "dark grey" if L < DARK_LIGHTNESS else "grey"
     word = hue_word(np.degrees(np.arctan2(b, a)))
-    return f"{_strength(L, chroma)}{word}"
+    adjective = _strength(L, chroma)
+    pink = (word in PINK_HUES and L >= PINK_LIGHTNESS) or (word == "red" and adjective == "pale ")
+    return f"{adjective}{'pink' if pink else word}"
 
 
 def _strength(L: float, chroma: float) -> str:

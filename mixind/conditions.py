@@ -57,6 +57,13 @@ class Conditions:
         fresh = "aged solution" if self.aged else "fresh solution"
         return f"{self.vessel} vessel, {self.path:g} cm; {self.make_viewer().describe()}; {salt}, {fresh}"
 
+    def remarks(self) -> list[str]:
+        """Return what has to be said about the conditions themselves."""
+        if self.ionic_strength <= equilibria.DAVIES_LIMIT:
+            return []
+        return [f"ionic strength {self.ionic_strength:g} mol/L is beyond the activity correction, which stays at its value "
+                f"for {equilibria.DAVIES_LIMIT:g}"]
+
     def facts(self) -> dict[str, Any]:
         """Return the conditions for JSON, units in the keys."""
         names = {"path": "path_cm", "temperature": "temperature_C", "ionic_strength": "ionic_strength_mol_per_L"}

@@ -21,7 +21,7 @@ from mixind.difference import METRICS, PRINTED_CHART_THRESHOLD
 from mixind.errors import MixindError
 from mixind.files import check_target, write_whole
 from mixind.prediction import Prediction, predict
-from mixind.quantities import significant
+from mixind.quantities import pH_text, significant
 from mixind.version import VERSION
 from mixind.viewing import SIMULATION_REMARK
 
@@ -206,7 +206,7 @@ def _ladder(page: _Page, prediction: Prediction) -> None:
     height = pitch - min(4.0, 0.22 * pitch)
     columns = _columns(page.width)
     twins = [eyes for eyes in _TWIN_EYES if eyes != prediction.conditions.eyes][:2]
-    _column_heads(page, columns, twins, top + 2.5)
+    _column_heads(page, columns, prediction, twins, top + 2.5)
     for x in (columns.swatch - 1.4, columns.swatch + columns.swatch_width + 1.4):
         page.line((x, x), (_LADDER_FOOT + 0.5, top - 0.5), 3.2)
     for number, row in enumerate(prediction.rows()):
@@ -218,22 +218,26 @@ def _ladder(page: _Page, prediction: Prediction) -> None:
         twin_at += columns.twin_width + 2
 
 
-def _column_heads(page: _Page, columns: _Columns, twins: list[str], y: float) -> None:
-    for x, text in ((columns.pH, "pH"), (columns.swatch, "colour in the vessel"), (columns.joint, "apart"),
+def _column_heads(page: _Page, columns: _Columns, prediction: Prediction, twins: list[str], y: float) -> None:
+    for x, text in ((columns.pH, "pH"), (columns.swatch, _seen_by(prediction)), (columns.joint, "apart"),
                     (columns.words, "in words; L* a* b*; ± dE00; grade")):
         page.text(x, y, text, 6.5, color=_FAINT)
     for number, eyes in enumerate(twins):
         page.text(columns.twin + number * (columns.twin_width + 2), y, f"{eyes} eye", 6.5, color=_FAINT)
 
 
+def _seen_by(prediction: Prediction) -> str:
+    eyes = prediction.conditions.eyes
+    return "colour in the vessel" if eyes == "normal" else f"colour as a {eyes} eye is thought to see it"
+
+
 def _rung(page: _Page, columns: _Columns, row: dict[str, Any], y: float, height: float) -> None:
     middle = y + height / 2
     size = float(np.clip(height * 1.5, 6.5, 22))
-    figure = f"{row['pH']:.2f}".rstrip("0").rstrip(".")
-    page.text(columns.pH, middle, figure, size, columns.swatch - columns.pH - 4, fontweight="bold")
+    page.text(columns.pH, middle, pH_text(row["pH"]), size, columns.swatch - columns.pH - 4, fontweight="bold")
     page.box(columns.swatch, y, columns.swatch_width, height, row["hex"])
     L, a, b = row["Lab"]
-    numbers = f"{L:.0f} {a:.0f} {b:.0f};  ±{row['sd_dE00']:.1f};  {row['grade']}"
+    numbers = f"{L:.0f} {round(a):d} {round(b):d};  ±{row['sd_dE00']:.1f};  {row['grade']}"
     if not row["in_gamut"]:
         numbers += f";  print off by {row['shown_dE00']:.1f}"
     if height > 7:
@@ -244,7 +248,8 @@ def _rung(page: _Page, columns: _Columns, row: dict[str, Any], y: float, height:
 
 
 def _joints(page: _Page, columns: _Columns, prediction: Prediction, top: float, pitch: float) -> None:
-    """Write between two rungs how far they look apart; the weakest is set off."""
+    """Write between two rungs how far they look apart; the weakest is set off, and what looks alike is said to."""
+    limit = METRICS["ciede2000"].threshold or 0.0
     steps = np.diagonal(prediction.separation(), offset=1)
     weakest = int(steps.argmin())
     for number, value in enumerate(steps):
@@ -255,8 +260,8 @@ def _joints(page: _Page, columns: _Columns, prediction: Prediction, top: float, 
                   _INK if weak else _RAIL)
         page.text(columns.joint + 2.5, y, f"{value:.1f}", float(np.clip(pitch * 0.8, 6, 9)),
                   fontweight="bold" if weak else "normal")
-        if weak and pitch > 7:
-            page.text(columns.joint + 2.5, y - 3.4, "weakest", 5.5, color=_FAINT)
+        if (weak or value < limit) and pitch > 7:
+            page.text(columns.joint + 2.5, y - 3.4, "too close" if value < limit else "weakest", 5.5, color=_FAINT)
 
 
 def _twin(page: _Page, prediction: Prediction, eyes: str, x: float, width: float, top: float, pitch: float,
@@ -277,8 +282,9 @@ def _foot(page: _Page, prediction: Prediction, date: str) -> None:
     page.line((_MARGIN, page.width - _MARGIN), (y + 4, y + 4))
     _blend_table(page, prediction, _MARGIN, y, middle - _MARGIN - 6)
     _reading(page, prediction, middle, y, page.width - _MARGIN - middle)
-    about = (f"mixind {VERSION} · {date} · dye data {prediction.blend.digest()} · reprint: mixind chart BLEND "
-             f"OUT.pdf --date {date}, at 100 % size, colours unmanaged or sRGB")
+    span = ",".join(pH_text(value) for value in prediction.pH) if prediction.pH.size <= 9 else "FROM:TO:STEP"
+    about = (f"mixind {VERSION} · {date} · dye data {prediction.blend.digest()} · reprint at 100 % size: mixind chart BLEND "
+             f"OUT.pdf --ph {span} --date {date} · look at it in daylight")
     page.text(_MARGIN, 9, about, 6, page.width - 2 * _MARGIN, color=_FAINT)
 
 
@@ -307,8 +313,8 @@ def _reading(page: _Page, prediction: Prediction, x: float, y: float, room: floa
     limit = METRICS["ciede2000"].threshold or 0.0
     verdict = f"told apart side by side from {limit:g}, against this print from {PRINTED_CHART_THRESHOLD:g}"
     lines = [
-        f"Numbers between rungs: separation (CIEDE2000, kL 2); {verdict}. Weakest of all pairs: pH {worst.pair[0]:g} and "
-        f"{worst.pair[1]:g}, {worst.separation:.1f}.",
+        f"Numbers between rungs: separation (CIEDE2000, kL 2); {verdict}. Weakest of all pairs at the exact dose: pH "
+        f"{pH_text(worst.pair[0])} and {pH_text(worst.pair[1])}, {worst.separation:.1f}.",
         "± is the standard uncertainty of the colour. Grades: A sources agree, B one source, C memory, analogy or a guessed "
         "band shape. Check each batch with three buffers.",
         "Valid at the stated temperature ± 5 C, in clear colourless samples without chlorine or protein. "

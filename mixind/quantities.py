@@ -228,6 +228,16 @@ def pH_series(text: str) -> np.ndarray:
     return values
 
 
+def pH_text(value: float) -> str:
+    """Return a pH with at most two decimals, as it is read at the bench.
+
+    Example:
+        >>> pH_text(4.0), pH_text(6.27272)
+        ('4', '6.27')
+    """
+    return f"{value:.2f}".rstrip("0").rstrip(".")
+
+
 def significant(value: float, digits: int = 3) -> str:
     """Return `value` with so many significant figures and no exponent, trailing zeros kept.
 

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import dataclasses
 from itertools import product
 from pathlib import Path
 from typing import Any
@@ -17,12 +18,13 @@ from mixind.errors import MixindError, NoAnswer
 from mixind.files import check_target, write_whole
 from mixind.library import Library
 from mixind.prediction import Prediction, predict
+from mixind.quantities import pH_text
 from mixind.search.candidates import Choice, choose
 from mixind.search.formulate import DEFAULT_DARKEST, DEFAULT_PEAK_ABSORBANCE, Formulation, formulate
 from mixind.search.problem import Task
 from mixind.search.subsets import PLANS
 from mixind.version import VERSION
-from mixind.viewing import EYES, ILLUMINANTS, OBSERVERS
+from mixind.viewing import EYES, OBSERVERS
 
 
 @click.command()
@@ -40,15 +42,16 @@ from mixind.viewing import EYES, ILLUMINANTS, OBSERVERS
 @click.option("--peak-absorbance", type=float, default=DEFAULT_PEAK_ABSORBANCE, show_default=True,
               help="Most that one dye may absorb.")
 @options.sample_options
-@click.option("--light", multiple=True, metavar="LAMP", help=f"{', '.join(ILLUMINANTS)}, ..; may be repeated. [default: D65]")
+@click.option("--light", multiple=True, metavar="LAMP", help=f"{options.LAMPS}; may be repeated. [default: D65]")
 @click.option("--observer", type=click.Choice(list(OBSERVERS)), help="Degrees of field. [default: 2]")
-@click.option("--eyes", multiple=True, type=click.Choice(EYES), help="Colour vision; may be repeated. [default: normal]")
+@click.option("--eyes", multiple=True, type=click.Choice(EYES, case_sensitive=False), help="Colour vision; may be repeated. [default: normal]")
 @click.option("--severity", type=float, help="Of a colour vision deficiency, 0 to 1. [default: 1]")
 @options.metric_options
 @click.option("--effort", type=click.Choice(list(PLANS)), default="normal", show_default=True, help="How hard to search.")
 @click.option("--seed", type=int, default=1, show_default=True, help="Of the random starts.")
 @click.option("--save", type=click.Path(), metavar="FILE", help="Write the blend file.")
 @click.option("--chart", type=click.Path(), metavar="FILE", help="Draw the chart (pdf, svg or png).")
+@options.paper_option
 @options.date_option
 @options.replace_option
 @options.library_option
@@ -63,21 +66,24 @@ def command(as_json: bool, replace: bool, save: str | None, chart: str | None, d
     conditions, task = _task(given)
     threshold = options.chosen_threshold(given["metric"], given["threshold"])
     found = formulate(task, choice, threshold, given["effort"], given["seed"], printing.progress)
-    blend = _titled(found, conditions[0])
-    prediction = predict(blend, task.pH, conditions[0])
+    # what is shown is what everybody sees; deficient eyes decide the separations
+    shown = dataclasses.replace(conditions[0], eyes="normal", severity=1.0)
+    blend = _titled(found, shown, conditions)
+    prediction = predict(blend, task.pH, shown)
     if targets[0]:
         write_whole(targets[0], blend_text(blend).encode(), replace)
     if targets[1]:
         from mixind import figures
 
-        figures.write_chart(targets[1], prediction, replace, date)
+        figures.write_chart(targets[1], prediction, replace, date, given["paper"])
     if as_json:
         printing.as_json({"mixind": VERSION, "blend": blend.facts(), **found.facts(),
-                          "conditions": [c.facts() for c in conditions], "rows": prediction.rows()})
+                          "conditions": shown.facts(), "viewers": [c.facts() for c in conditions], "rows": prediction.rows()})
     else:
         _print(found, blend, prediction, choice)
     if not found.told_apart:
-        raise NoAnswer(f"pH {found.worst.pair[0]:g} and {found.worst.pair[1]:g} are not told apart: separation "
+        low, high = (pH_text(value) for value in found.worst.pair)
+        raise NoAnswer(f"pH {low} and {high} are not told apart: separation "
                        f"{found.worst.separation:.1f}, {threshold:g} needed. Try a coarser step, more dyes or a wider vessel.")
 
 
@@ -116,23 +122,22 @@ def _task(given: dict[str, Any]) -> tuple[list[Conditions], Task]:
         given["peak_absorbance"], given["darkest"])
 
 
-def _titled(found: Formulation, conditions: Conditions) -> Blend:
-    from dataclasses import replace
-
+def _titled(found: Formulation, shown: Conditions, asked: list[Conditions]) -> Blend:
+    """Return the blend with its title, the conditions it is shown under and for whom it was made."""
     title = found.blend.title if found.told_apart else f"{found.blend.title}: NOT told apart, best effort"
-    kept = {"vessel": conditions.vessel, "path": conditions.path, "light": conditions.light, "observer": conditions.observer,
-            "eyes": conditions.eyes, "temperature": conditions.temperature, "ionic_strength": conditions.ionic_strength}
-    return replace(found.blend, title=title, conditions=kept)
+    keys = ("vessel", "path", "light", "observer", "temperature", "ionic_strength")
+    remarks = (f"made for {'; '.join(c.make_viewer().describe() for c in asked)}",) if asked != [shown] else ()
+    return dataclasses.replace(found.blend, title=title, conditions={key: getattr(shown, key) for key in keys}, remarks=remarks)
 
 
 def _print(found: Formulation, blend: Blend, prediction: Prediction, choice: Choice) -> None:
     printing.print_blend(blend)
-    printing.print_colours(prediction)
     metric, kL = found.task.metric.name, found.task.kL
+    printing.print_colours(prediction, metric, kL)
     printing.print_separation(found.worst.separation, found.worst.pair, found.threshold, metric, kL)
     if found.task.tolerance:
         printing.result(f"  with the dose off by up to {found.task.tolerance:.0%}; {found.nominal.separation:.1f} at the exact "
-                        f"dose (pH {found.nominal.pair[0]:g} and {found.nominal.pair[1]:g})")
+                        f"dose (pH {pH_text(found.nominal.pair[0])} and {pH_text(found.nominal.pair[1])})")
     if len(found.by_viewer) > 1:
         printing.table([[f"worst for {key}", f"{value:.1f}"] for key, value in found.by_viewer.items()])
     printing.print_dissolving(blend)
@@ -140,5 +145,7 @@ def _print(found: Formulation, blend: Blend, prediction: Prediction, choice: Cho
     record = found.search
     printing.result(f"Search: {record['candidates']} dyes, at most {choice.most}; {record['starts']} climbs, "
                     f"{record['evaluations']} evaluations, {record['seconds']:.1f} s, seed {record['seed']}")
-    for name, reason in choice.left_out.items():
-        printing.remark(f"{name} was left out: {reason}")
+    if choice.left_out:
+        printing.remark("left out unless named: " + "; ".join(f"{name} ({why})" for name, why in choice.left_out.items()))
+    for text in [*blend.remarks, *prediction.conditions.remarks()]:
+        printing.remark(text)

@@ -6,14 +6,16 @@ from collections.abc import Callable
 from typing import Any, TypeVar
 
 import click
+import numpy as np
 
 from mixind.blend import Blend, read_blend
 from mixind.conditions import Conditions, differing
 from mixind.difference import METRICS
 from mixind.errors import MixindError
+from mixind.figures import PAPERS
 from mixind.library import Library
-from mixind.quantities import path_length
-from mixind.viewing import EYES, ILLUMINANTS, OBSERVERS, VESSELS
+from mixind.quantities import path_length, pH_series
+from mixind.viewing import EYES, OBSERVERS, VESSELS
 
 F = TypeVar("F", bound=Callable[..., Any])
 
@@ -28,11 +30,15 @@ def _several(*options: Callable[[F], F]) -> Callable[[F], F]:
     return decorate
 
 
+LAMPS = "D65 or D50 (daylight), A (incandescent), FL2 or FL11 (fluorescent), LED-B1 to LED-B5, or another CIE illuminant"
+
+
 def sample_options(command: F) -> F:
     """Add what the sample is and what holds it."""
     return _several(
-        click.option("--vessel", type=click.Choice(list(VESSELS)), help="What holds the sample. [default: clear]"),
-        click.option("--path", metavar="LENGTH", help='Width of the vessel, such as "16 mm". [default: 1 cm]'),
+        click.option("--vessel", type=click.Choice(list(VESSELS), case_sensitive=False),
+                     help="Looked through, or standing on white so that light crosses twice. [default: clear]"),
+        click.option("--path", metavar="LENGTH", help='Length of liquid that one looks through, such as "16 mm". [default: 1 cm]'),
         click.option("--temperature", type=float, metavar="C", help="Of the sample. [default: 25]"),
         click.option("--ionic-strength", type=float, metavar="MOL/L", help="Of the sample. [default: 0.1]"),
         click.option("--aged", is_flag=True, default=None, help="Let slow steps (fading) come to rest."),
@@ -42,9 +48,9 @@ def sample_options(command: F) -> F:
 def viewer_options(command: F) -> F:
     """Add lamp, observer and eye, one of each."""
     return _several(
-        click.option("--light", metavar="LAMP", help=f"{', '.join(ILLUMINANTS)} or another CIE illuminant. [default: D65]"),
+        click.option("--light", metavar="LAMP", help=f"{LAMPS}. [default: D65]"),
         click.option("--observer", type=click.Choice(list(OBSERVERS)), help="Degrees of field. [default: 2]"),
-        click.option("--eyes", type=click.Choice(EYES), help="Colour vision. [default: normal]"),
+        click.option("--eyes", type=click.Choice(EYES, case_sensitive=False), help="Colour vision. [default: normal]"),
         click.option("--severity", type=float, help="Of a colour vision deficiency, 0 to 1. [default: 1]"),
     )(command)
 
@@ -62,6 +68,8 @@ library_option = click.option(
     "--library", "libraries", multiple=True, metavar="FOLDER", help="Folder with further dye files; may be repeated.")
 json_option = click.option("--json", "as_json", is_flag=True, help="Print JSON instead of text.")
 replace_option = click.option("--replace", is_flag=True, help="Overwrite files that exist.")
+paper_option = click.option("--paper", type=click.Choice(list(PAPERS), case_sensitive=False), default="a4", show_default=True,
+                            help="Size of the chart's page.")
 date_option = click.option("--date", metavar="YYYY-MM-DD", help="Date on the page. [default: today]")
 
 
@@ -80,7 +88,13 @@ def blend_and_conditions(path: str, libraries: tuple[str, ...], given: dict[str,
     """
     blend = read_blend(path, Library(libraries))
     conditions = Conditions(**{**blend.conditions, **given_conditions(given)})
-    return blend, conditions, [*blend.remarks, *differing(conditions, dict(blend.conditions))]
+    remarks = [*blend.remarks, *differing(conditions, dict(blend.conditions)), *conditions.remarks(), *blend.beyond_limits()]
+    return blend, conditions, remarks
+
+
+def given_span(span: str | None, blend: Blend) -> np.ndarray:
+    """Return the pH asked for, else those the blend is meant for, else 4 to 10."""
+    return pH_series(span or blend.span or "4:10")
 
 
 def chosen_threshold(metric: str, threshold: float | None) -> float:

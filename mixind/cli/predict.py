@@ -9,27 +9,26 @@ import click
 from mixind.cli import options, printing
 from mixind.difference import METRICS
 from mixind.prediction import predict
-from mixind.quantities import pH_series
 from mixind.version import VERSION
 
 
 @click.command()
 @click.argument("blend", metavar="BLEND")
-@click.option("--ph", "span", default="4:10", show_default=True, metavar="FROM:TO[:STEP]", help="Or a list: 4,5.5,7.")
+@click.option("--ph", "span", metavar="FROM:TO[:STEP]", help="Or a list: 4,5.5,7. [default: of the blend, else 4:10]")
 @options.sample_options
 @options.viewer_options
 @options.metric_options
 @options.library_option
 @options.json_option
-def command(blend: str, span: str, metric: str, threshold: float | None, libraries: tuple[str, ...], as_json: bool,
+def command(blend: str, span: str | None, metric: str, threshold: float | None, libraries: tuple[str, ...], as_json: bool,
             **given: Any) -> None:
     """Show the colours of BLEND (a file, or - for standard input) over pH.
 
     Example: mixind predict examples/drip_line.toml --ph 4.5:7.5:0.5
     """
     limit = options.chosen_threshold(metric, threshold)
-    pH = pH_series(span)
     read, conditions, remarks = options.blend_and_conditions(blend, libraries, given)
+    pH = options.given_span(span, read)
     found = predict(read, pH, conditions)
     if as_json:
         printing.as_json({
@@ -39,7 +38,7 @@ def command(blend: str, span: str, metric: str, threshold: float | None, librari
     for text in remarks:
         printing.remark(text)
     printing.print_blend(read)
-    printing.print_colours(found)
+    printing.print_colours(found, metric, METRICS[metric].kL)
     if pH.size > 1:
         worst = found.worst(metric=metric)
         printing.print_separation(worst.separation, worst.pair, limit, metric, METRICS[metric].kL)

@@ -5,14 +5,16 @@ from __future__ import annotations
 import os
 import sys
 from collections.abc import Iterable
+from dataclasses import replace
 from typing import Any
 
 import click
+import numpy as np
 
 from mixind.blend import Blend, mg_per_litre
-from mixind.difference import PRINTED_CHART_THRESHOLD
+from mixind.difference import METRICS, PRINTED_CHART_THRESHOLD
 from mixind.prediction import Prediction
-from mixind.quantities import significant
+from mixind.quantities import pH_text, significant
 
 MODEL_REMARK = ("not modelled: the sample's own colour and turbidity, chlorine, proteins and metals, dimers of dyes, "
                 "the acid of the indicator itself in a weakly buffered sample")
@@ -70,24 +72,25 @@ def print_blend(blend: Blend) -> None:
     """Print what goes into the stock and how it is dosed."""
     result(f"Blend: {blend.title}")
     rows = [["dye", "% w/v", "mg/L of stock", "umol/L in sample", "grade"]]
-    for component, concentration in zip(blend.components, blend.sample_concentrations(), strict=True):
+    concentrations = blend.sample_concentrations()
+    for component, concentration in zip(blend.components, concentrations, strict=True):
         form = f" ({component.form})" if component.form else ""
         rows.append([component.dye.name + form, significant(component.grams_per_litre / 10), mg_per_litre(component),
                      significant(concentration * 1e6), component.dye.grade])
     table(rows)
     result(f"  dose: {blend.dose}, {blend.dose.in_drops()}")
+    result(f"  in all {significant(concentrations.sum() * 1e6)} umol/L of dye in the sample, whose alkalinity has to be many times that")
 
 
-def print_colours(prediction: Prediction) -> None:
-    """Print one line per pH: colour in words, hex, L*a*b*, uncertainty and grade."""
+def print_colours(prediction: Prediction, metric: str, kL: float) -> None:
+    """Print one line per pH: colour in words, hex, L*a*b*, uncertainty, separation from the next, grade."""
     result(f"Colours: {prediction.conditions.describe()}")
-    rows = [["pH", "colour", "hex", "L*", "a*", "b*", "+- dE00", "next dE00", "grade"]]
-    for row in prediction.rows():
-        L, a, b = (f"{value:.1f}" for value in row["Lab"])
+    rows = [["pH", "colour", "hex", "L*", "a*", "b*", "+- dE00", "to next", "grade"]]
+    steps = [*(f"{value:.1f}" for value in np.diagonal(prediction.separation(metric, kL), offset=1)), ""]
+    for row, following in zip(prediction.rows(), steps, strict=True):
+        L, a, b = (f"{value + 0.0:.1f}" for value in np.round(row["Lab"], 1))
         mapped = "" if row["in_gamut"] else "*"
-        following = "" if row["dE00_next"] is None else f"{row['dE00_next']:.1f}"
-        rows.append([f"{row['pH']:.2f}".rstrip("0").rstrip("."), row["colour"], row["hex"] + mapped, L, a, b,
-                     f"{row['sd_dE00']:.1f}", following, row["grade"]])
+        rows.append([pH_text(row["pH"]), row["colour"], row["hex"] + mapped, L, a, b, f"{row['sd_dE00']:.1f}", following, row["grade"]])
     if colour_terminal():
         _table_with_swatches(rows)
     else:
@@ -106,29 +109,58 @@ def _table_with_swatches(rows: list[list[str]]) -> None:
 def print_separation(separation: float, pair: tuple[float, float], threshold: float, metric: str, kL: float) -> None:
     """Print the weakest step and what that means side by side and against a printed chart."""
     weight = f", kL {kL:g}" if metric == "ciede2000" else ""
-    result(f"Worst pair: pH {pair[0]:g} and {pair[1]:g}, separation {separation:.1f} ({metric.upper()}{weight})")
+    result(f"Worst pair: pH {pH_text(pair[0])} and {pH_text(pair[1])}, separation {separation:.1f} ({metric.upper()}{weight})")
     if metric == "ciede2000":
         readings = [f"{'told apart' if separation >= limit else 'NOT told apart'} {how} (from {limit:g})"
                     for how, limit in (("side by side", threshold), ("against a printed chart", PRINTED_CHART_THRESHOLD))]
         result(f"  {'; '.join(readings)}")
 
 
+def too_close(prediction: Prediction) -> list[str]:
+    """Return a remark when neighbouring rungs look alike side by side; empty when none do."""
+    limit = METRICS["ciede2000"].threshold or 0.0
+    steps = np.diagonal(prediction.separation(), offset=1)
+    pairs = [f"{pH_text(low)}-{pH_text(high)}" for low, high, value in zip(prediction.pH, prediction.pH[1:], steps, strict=False)
+             if value < limit]
+    return [f"not told apart side by side: pH {', '.join(pairs)}"] if pairs else []
+
+
+TAP_WATER = 0.005
+"""Ionic strength of a fresh tap water [mol/L]: common practice, no source."""
+
+
 def print_trust(prediction: Prediction) -> None:
     """Print how far the colours can be trusted, and why."""
-    grades = sorted(set(prediction.grades))
-    about = {"A": "independent sources agree", "B": "one source", "C": "memory, analogy or a guessed band shape"}
     result("How far to trust it")
-    for grade in grades:
-        at = [f"{pH:g}" for pH, g in zip(prediction.pH, prediction.grades, strict=True) if g == grade]
+    about = {"A": "independent sources agree", "B": "one source", "C": "memory, analogy or a guessed band shape"}
+    for grade in sorted(set(prediction.grades)):
+        at = [pH_text(pH) for pH, g in zip(prediction.pH, prediction.grades, strict=True) if g == grade]
         result(f"  grade {grade} ({about[grade]}): pH {', '.join(at)}")
     result(f"  colours are known to about +- {prediction.sd_dE00.max():.1f} dE00 (standard uncertainty, largest of the ladder):"
            " check the batch with three buffers")
-    result(f"  {VALID_TEMPERATURE}")
-    for dye in prediction.blend.dyes:
-        for limit in dye.limits:
-            result(f"  {dye.name}: {limit.kind}: {limit.text}")
+    result(f"  {VALID_TEMPERATURE}; {_salt_remark(prediction)}")
+    result(f"  can be spoiled by {_spoilers(prediction.blend)}; details: mixind dye show NAME")
     result(f"  {MODEL_REMARK}")
     print_hazards(prediction.blend)
+
+
+def _salt_remark(prediction: Prediction) -> str:
+    """Return by how much the constants lie higher in tap water than in the sample assumed."""
+    solution = prediction.conditions.solution()
+    tap = replace(solution, ionic_strength=TAP_WATER)
+    shifts = [step.working_pka(tap) - step.working_pka(solution) for dye in prediction.blend.dyes for step in dye.active_steps(solution)]
+    largest = max(shifts, key=abs, default=0.0)
+    return f"at ionic strength {TAP_WATER:g} (tap water) pKa lie up to {largest:+.2f} off: give --ionic-strength"
+
+
+def _spoilers(blend: Blend) -> str:
+    """Return what spoils the colours, each with the dyes it concerns."""
+    kinds: dict[str, list[str]] = {}
+    for dye in blend.dyes:
+        for limit in dye.limits:
+            if dye.name not in kinds.setdefault(limit.kind, []):
+                kinds[limit.kind].append(dye.name)
+    return ", ".join(f"{kind} ({', '.join(names)})" for kind, names in kinds.items()) or "nothing we know of"
 
 
 def print_dissolving(blend: Blend) -> None:

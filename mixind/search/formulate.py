@@ -11,6 +11,7 @@ import numpy as np
 from mixind import dyes
 from mixind.blend import Blend, blend_of
 from mixind.errors import MixindError
+from mixind.quantities import pH_text
 from mixind.search.candidates import Choice
 from mixind.search.local import Effort
 from mixind.search.problem import Problem, Task
@@ -95,8 +96,9 @@ def _weighable(problem: Problem, positions: tuple[int, ...], x: np.ndarray, choi
     share = part.task.dose.share()
     per_share = part.largest * np.array([dye.molar_mass for dye in part.dyes]) / share * 1e3
     final = rounded(part, np.maximum([s for _, s in kept], _NEGLIGIBLE_SHARE), per_share)
-    span = f"pH {part.task.pH[0]:g} to {part.task.pH[-1]:g} in steps of {part.task.step:g}"
-    return blend_of(part.dyes, final * part.largest, part.task.dose, span)
+    low, high, step = (pH_text(value) for value in (part.task.pH[0], part.task.pH[-1], part.task.step))
+    blend = blend_of(part.dyes, final * part.largest, part.task.dose, f"pH {low} to {high} in steps of {step}")
+    return replace(blend, span=f"{low}:{high}:{step}")
 
 
 def evaluated(task: Task, blend: Blend, threshold: float, record: dict[str, Any]) -> Formulation:
