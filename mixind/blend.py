@@ -44,7 +44,7 @@ class Component:
 
     @property
     def molar_mass(self) -> float:
-        """Molar mass of the salt whose mass is counted [g/mol]."""
+        """Molar mass of the salt whose mass is counted [g/mol]; MixindError for a salt the dye's file does not know."""
         if self.form is None or self.form == self.dye.salt:
             return self.dye.molar_mass
         for substance in self.dye.substances:
@@ -128,7 +128,14 @@ class Blend:
 
 
 def blend_of(dyes_used: Sequence[Dye], sample_concentrations: np.ndarray, made_for: Dose, title: str) -> Blend:
-    """Return the blend that brings these concentrations, (n,) [mol/L], into the sample at its dose."""
+    """Return the blend that brings given concentrations into the sample at its dose.
+
+    Args:
+        dyes_used: n dyes, each once.
+        sample_concentrations: (n,), zero or more [mol/L].
+        made_for: the dose.
+    Raises: MixindError when there is no dye, or one twice.
+    """
     stock = np.asarray(sample_concentrations) / made_for.share()
     components = tuple(
         Component(dye, Strength(float(c) * dye.molar_mass, by_mass=True)) for dye, c in zip(dyes_used, stock, strict=True))
@@ -146,7 +153,8 @@ def read_blend(path: str | Path, library: Library) -> Blend:
     stock_ph = table.number("stock_ph", -1, 15, None)
     stated: dict[str, Any] = {
         "title": table.text("title", "untitled blend"), "conditions": read_conditions(table.table("conditions")),
-        "span": _span(table), "solvent": table.text("solvent", ""), "alkali": table.text("alkali", ""), "remarks": table.texts("remarks")}
+        "span": _span(table), "solvent": table.text("solvent", ""), "alkali": table.text("alkali", ""),
+        "remarks": table.texts("remarks")}
     made_for = DEFAULT_DOSE
     try:
         made_for = dose(written_dose)

@@ -1,4 +1,4 @@
-"""Colour spaces: tristimulus values to CIELAB, CAM16-UCS and Oklab, and to sRGB for a screen or a page.
+"""Colour spaces: tristimulus values to CIELAB, CAM16-UCS, Oklab and sRGB.
 
 Tristimulus values have Y = 1 for the white. Nothing is clipped: a colour-deficient viewer can have negative values.
 """
@@ -37,10 +37,6 @@ _CAM16 = np.array([[0.401288, 0.650173, -0.051461], [-0.250268, 1.204414, 0.0458
 
 ADAPTING_LUMINANCE = 64.0
 BACKGROUND = 20.0
-
-WHITE_ON_SCREEN = 0.9
-"""The white is shown at this share of the screen's or the paper's, so that pale colours keep room above them."""
-
 
 def _xyz_from_xy(x: float, y: float) -> np.ndarray:
     return np.array([x / y, 1.0, (1 - x - y) / y])
@@ -83,12 +79,6 @@ def cielab_and_jacobian(XYZ: np.ndarray, white: np.ndarray) -> tuple[np.ndarray,
     f = np.where(curved, root, _LINEAR_SLOPE * ratio + 4 / 29)
     slope = np.where(curved, 1 / (3 * np.maximum(root, 0.1) ** 2), _LINEAR_SLOPE) / white
     return f @ _LAB_FROM_F.T + _LAB_OFFSET, _LAB_FROM_F * slope[..., None, :]
-
-
-def xyz_from_lab(Lab: np.ndarray, white: np.ndarray) -> np.ndarray:
-    """Return the tristimulus values of CIELAB colours; the inverse of `cielab`."""
-    f = np.linalg.solve(_LAB_FROM_F, (np.asarray(Lab) - _LAB_OFFSET)[..., None])[..., 0]
-    return np.asarray(np.where(f > 6 / 29, f**3, (f - 4 / 29) / _LINEAR_SLOPE) * white)
 
 
 @dataclass(frozen=True)
@@ -199,64 +189,3 @@ def srgb_encoded(linear: np.ndarray) -> np.ndarray:
     """Return sRGB values of linear ones; odd below zero. IEC 61966-2-1:1999."""
     size = np.abs(linear)
     return np.asarray(np.sign(linear) * np.where(size <= 0.0031308, 12.92 * size, 1.055 * size ** (1 / 2.4) - 0.055))
-
-
-@dataclass(frozen=True)
-class Patch:
-    """Colours ready for a screen or a page.
-
-    Attributes:
-        rgb: sRGB, each 0 to 1, (..., 3).
-        in_gamut: whether the colour could be shown as it is, (...).
-        cost: CIEDE2000 (1:1:1) between the colour and what is shown, 0 where it is in gamut, (...).
-    """
-
-    rgb: np.ndarray
-    in_gamut: np.ndarray
-    cost: np.ndarray
-
-    def hex(self) -> list[str]:
-        """Return "#rrggbb" for each colour of a one-dimensional patch."""
-        levels = np.rint(np.atleast_2d(self.rgb) * 255).astype(int)
-        return ["#" + "".join(f"{level:02x}" for level in row) for row in levels]
-
-
-_GAMUT_SLACK = 1e-6
-
-
-def patch(XYZ: np.ndarray, white: np.ndarray) -> Patch:
-    """Return what to paint for colours seen under `white`.
-
-    They are adapted to D65, the white is set to 0.9, and a colour outside sRGB loses chroma at constant Oklch lightness
-    and hue until it fits, by bisection. Source of the method: CSS Color 4, section 13 (without its local clipping).
-    """
-    from mixind.difference import ciede2000
-
-    adapted = XYZ @ adaptation(white).T
-    shown = WHITE_ON_SCREEN * adapted
-    inside = _in_gamut(shown)
-    mapped = np.where(inside[..., None], shown, _with_less_chroma(shown))
-    lab_white = WHITE_ON_SCREEN * D65_WHITE
-    cost = np.where(inside, 0.0, ciede2000(cielab(shown, lab_white), cielab(mapped, lab_white), kL=1.0))
-    rgb = np.clip(srgb_encoded(mapped @ RGB_FROM_XYZ.T), 0.0, 1.0)
-    return Patch(rgb, inside, cost)
-
-
-def _in_gamut(XYZ: np.ndarray) -> np.ndarray:
-    rgb = XYZ @ RGB_FROM_XYZ.T
-    return np.asarray(np.all((rgb >= -_GAMUT_SLACK) & (rgb <= 1 + _GAMUT_SLACK), axis=-1))
-
-
-def _with_less_chroma(XYZ: np.ndarray) -> np.ndarray:
-    lab = oklab(XYZ)
-    lab[..., 0] = np.clip(lab[..., 0], 0.0, 1.0)
-    low, high = np.zeros(lab.shape[:-1]), np.ones(lab.shape[:-1])
-    for _ in range(30):
-        middle = (low + high) / 2
-        fits = _in_gamut(xyz_from_oklab(_scaled_chroma(lab, middle)))
-        low, high = np.where(fits, middle, low), np.where(fits, high, middle)
-    return xyz_from_oklab(_scaled_chroma(lab, low))
-
-
-def _scaled_chroma(lab: np.ndarray, factor: np.ndarray) -> np.ndarray:
-    return np.concatenate([lab[..., :1], lab[..., 1:] * factor[..., None]], axis=-1)

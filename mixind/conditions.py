@@ -14,7 +14,7 @@ from mixind.viewing import Vessel, Viewer
 
 @dataclass(frozen=True)
 class Conditions:
-    """Sample, vessel, lamp and eye. Checked on construction.
+    """Sample, vessel, lamp and eye. Checked on construction, but for the lamp, which is looked up when it is needed.
 
     Attributes:
         vessel: one of `viewing.VESSELS`; `path` from wall to wall [cm].
@@ -36,8 +36,7 @@ class Conditions:
     def __post_init__(self) -> None:
         self.make_vessel()
         self.solution()
-        if self.observer not in viewing.OBSERVERS:
-            raise MixindError(f"observer: {self.observer!r} is not one of {', '.join(viewing.OBSERVERS)}.")
+        viewing.check_viewer(self.observer, self.eyes, self.severity)
 
     def solution(self) -> Solution:
         """Return what the equilibria depend on."""
@@ -81,8 +80,11 @@ def read_conditions(table: Table | None) -> dict[str, Any]:
     for key, known in (("vessel", viewing.VESSELS), ("observer", viewing.OBSERVERS), ("eyes", viewing.EYES)):
         if key in table:
             stated[key] = table.choice(key, known)
-    if "light" in table:
-        stated["light"] = table.text("light")
+    for key in ("light", "medium"):
+        if key in table:
+            stated[key] = table.text(key)
+    if "aged" in table:
+        stated["aged"] = table.flag("aged")
     for key, (low, high) in _NUMBERS.items():
         if key in table:
             stated[key] = table.number(key, low, high)
@@ -102,9 +104,16 @@ def conditions_text(stated: dict[str, Any]) -> str:
         return ""
     lines = ["", "[conditions]"]
     for key, value in stated.items():
-        written = f'"{value:g} cm"' if key == "path" else toml_text(value) if isinstance(value, str) else f"{value:g}"
-        lines.append(f"{key} = {written}")
+        lines.append(f"{key} = {_written(key, value)}")
     return "\n".join(lines) + "\n"
+
+
+def _written(key: str, value: Any) -> str:
+    if isinstance(value, bool):
+        return "true" if value else "false"
+    if isinstance(value, str):
+        return toml_text(value)
+    return f'"{value:.12g} cm"' if key == "path" else f"{value:.12g}"
 
 
 def differing(asked: Conditions, stated: dict[str, Any]) -> list[str]:

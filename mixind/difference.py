@@ -85,7 +85,8 @@ class _Terms:
         self.some_opposite = bool(self.opposite.any())
         if self.some_opposite:
             # the standard's mean of two opposite angles lies a quarter turn on from the smaller one
-            upper = 1j * np.where(b1 > 0, self.unit[0], self.unit[1])
+            first_is_smaller = (b1 > 0) | ((b1 == 0) & (a1 > 0))
+            upper = 1j * np.where(first_is_smaller, self.unit[0], self.unit[1])
             bisector = np.where(self.opposite, upper, bisector)
             self.dH = np.where(self.opposite, 2 * np.sqrt(product), self.dH)
         self.z = bisector / (np.abs(bisector) + _TINY)
@@ -208,8 +209,9 @@ class Metric:
 METRICS = {
     "ciede2000": Metric(
         "ciede2000", colorimetry.cielab, colorimetry.cielab_and_jacobian, ciede2000, ciede2000_and_slopes, DEFAULT_KL, 3.0,
-        "our choice; acceptability 1.8 in CIEDE2000 (Paravina et al., J. Esthet. Restor. Dent. 27 (2015) S1), 'clear' from 3.5 "
-        "in CIELAB (Mahy et al. 1994, as commonly quoted); fitted to differences below about 5, larger ones only rank"),
+        "our choice: above the acceptability of 1.8 in CIEDE2000 (Paravina et al., J. Esthet. Restor. Dent. 2015, abstract), "
+        "below the 3.5 in CIELAB from which reading scales of print shops call a difference clear (common practice); the "
+        "formula was fitted to differences below about 5, larger ones only rank"),
     "cam16-ucs": Metric(
         "cam16-ucs", colorimetry.cam16_ucs, colorimetry.cam16_ucs_and_jacobian, euclidean, euclidean_and_slopes, 1.0, None,
         "no threshold of seeing is known to us"),

@@ -125,7 +125,7 @@ class _Reader:
             peak_source = self.source(peak)
             peak.close()
         return dyes.Form(
-            label=table.text("label") or "", charge=int(table.number("charge", -8, 8) or 0),
+            label=table.text("label") or "", charge=table.whole("charge", -8, 8) or 0,
             absorptivity=self.spectrum(table, bands), sd=table.number("sd", 0, 1) or 0.0,
             shape_sd=table.number("shape_sd", 0, 1, 0.0), grade=table.choice("grade", dyes.GRADES) or "C",
             source=self.source(table), bands=bands, peak=stated, peak_source=peak_source, note=table.text("note", ""))
@@ -172,22 +172,27 @@ class _Reader:
             media[row.text("name") or ""] = (row.number("pka", -5, 20) or 0.0, row.number("sd", 0, 3) or 0.0, self.source(row))
             row.close()
         pka = table.number("pka", -5, 20)
+        slope, slope_source = self.temperature_slope(table)
+        salt_factor = table.number("salt_factor", -12, 12, None)
         return dyes.Step(
             stated=0.0 if pka is None else pka, sd=table.number("sd", 0.001, 3) or 0.1, kind=kind,
             ionic_strength=table.number("ionic_strength", 0, 10) or 0.0, charge=charge, source=self.source(table),
-            dpka_dt=self.temperature_slope(table), salt_factor=table.number("salt_factor", -12, 12, None),
+            dpka_dt=slope, temperature_source=slope_source, salt_factor=salt_factor,
+            salt_factor_source="" if salt_factor is None else self.source(table, "salt_factor_source"),
             slow=table.flag("slow"), note=table.text("note", ""), media=media)
 
-    def temperature_slope(self, table: Table) -> float:
+    def temperature_slope(self, table: Table) -> tuple[float | None, str]:
+        """Return the slope [1/K] and its source key; van 't Hoff turns an enthalpy into a slope."""
         slope, enthalpy = table.number("dpka_dt", -0.1, 0.1, None), table.number("enthalpy", -200, 200, None)
-        if slope is not None or enthalpy is not None:
-            self.source(table, "temperature_source")
+        if slope is None and enthalpy is None:
+            return None, ""
+        source = self.source(table, "temperature_source")
         if slope is not None and enthalpy is not None:
             table.fault("enthalpy", "stands beside dpka_dt. Give one of them.")
         if enthalpy is None:
-            return slope or 0.0
+            return slope, source
         kelvin = REFERENCE_TEMPERATURE + ZERO_CELSIUS
-        return float(-enthalpy * 1e3 / (np.log(10) * GAS_CONSTANT * kelvin**2))
+        return float(-enthalpy * 1e3 / (np.log(10) * GAS_CONSTANT * kelvin**2)), source
 
     def interval(self, table: Table, steps: int) -> dyes.Interval:
         low, high = table.number("low", -2, 16) or 0.0, table.number("high", -2, 16) or 0.0
@@ -197,7 +202,7 @@ class _Reader:
         if len(colours) != 2:
             table.fault("colours", "give two, of the acid and of the alkaline side.")
             colours = ("", "")
-        step = int(table.number("step", 1, max(steps, 1), 1.0))
+        step = table.whole("step", 1, max(steps, 1), 1) or 1
         return dyes.Interval(step, low, high, (colours[0], colours[1]), self.source(table))
 
     def ratio(self, table: Table, labels: list[str]) -> dyes.Ratio:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from dataclasses import dataclass, field
 from functools import cached_property
 
@@ -22,7 +23,11 @@ CONSTANT_KINDS = ("thermodynamic", *_KIND_OFFSET)
 
 # log10(1 + S_T/K_S) in sea water of salinity 35 at 25 C, S_T = 0.0282 and K_S = 0.100 mol/kg: the step from the
 # total to the free scale. Dickson, Sabine and Christian, Guide to best practices, PICES 3 (2007) (from memory).
-_TOTAL_TO_FREE = 0.107
+_TOTAL_TO_FREE = math.log10(1 + 0.0282 / 0.100)
+
+_UNKNOWN_SLOPE_SD = 0.01
+"""Standard uncertainty of a temperature slope that nobody states [1/K]: the spread of those in the library, which run from
+-0.003 to -0.014."""
 
 VISIBLE = (400.0, 700.0)
 """Range in which a form counts as coloured and in which peak absorbance is limited [nm]."""
@@ -41,7 +46,7 @@ class Step:
         ionic_strength: of the solution in which it was measured [mol/L].
         charge: of the step's acid form.
         source: key in the dye's `sources`.
-        dpka_dt: change with temperature near 25 C [1/K].
+        dpka_dt: change with temperature near 25 C [1/K], or None when it is not known.
         salt_factor: replaces 2z - 1 as the multiple of the Davies term, or None.
         slow: whether the step takes minutes or more, so that a fresh solution has not gone through it.
         media: constants for named media, used there as they are: name to (pKa, sd, source).
@@ -53,8 +58,10 @@ class Step:
     ionic_strength: float
     charge: int
     source: str
-    dpka_dt: float = 0.0
+    dpka_dt: float | None = None
+    temperature_source: str = ""
     salt_factor: float | None = None
+    salt_factor_source: str = ""
     slow: bool = False
     note: str = ""
     media: dict[str, tuple[float, float, str]] = field(default_factory=dict)
@@ -78,10 +85,17 @@ class Step:
         if solution.medium in self.media:
             return self.media[solution.medium][0]
         activity = self.davies_factor * equilibria.davies(solution.ionic_strength, solution.temperature)
-        return self.pka + activity + self.dpka_dt * (solution.temperature - equilibria.REFERENCE_TEMPERATURE)
+        return self.pka + activity + (self.dpka_dt or 0.0) * (solution.temperature - equilibria.REFERENCE_TEMPERATURE)
+
+    def working_sd(self, solution: Solution) -> float:
+        """Return the standard uncertainty of the working constant, larger off 25 C where the slope is not known."""
+        if solution.medium in self.media:
+            return self.media[solution.medium][1]
+        off = abs(solution.temperature - equilibria.REFERENCE_TEMPERATURE) if self.dpka_dt is None else 0.0
+        return math.hypot(self.sd, _UNKNOWN_SLOPE_SD * off)
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Form:
     """One protonation state and its spectrum.
 
@@ -189,9 +203,11 @@ class MakeUp:
     """(solvent, as written, source)"""
 
 
-@dataclass(frozen=True)
+@dataclass(frozen=True, eq=False)
 class Dye:
     """A dye with everything the program knows of it; see DEVELOPERS.md for the file it is read from.
+
+    Two dyes are equal when they come from files of the same content.
 
     Attributes (beside the obvious):
         formula, molar_mass: of the main entry, whose `salt` says what it is [g/mol].
@@ -226,6 +242,12 @@ class Dye:
     notes: tuple[str, ...] = ()
     sources: dict[str, str] = field(default_factory=dict)
     digest: str = ""
+
+    def __eq__(self, other: object) -> bool:
+        return isinstance(other, Dye) and (self.name, self.digest) == (other.name, other.digest)
+
+    def __hash__(self) -> int:
+        return hash((self.name, self.digest))
 
     @property
     def grade(self) -> str:

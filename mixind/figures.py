@@ -22,12 +22,14 @@ from mixind.errors import MixindError
 from mixind.files import check_target, write_whole
 from mixind.prediction import Prediction, predict
 from mixind.quantities import pH_text, significant
+from mixind.separation import Worst
 from mixind.version import VERSION
 from mixind.viewing import SIMULATION_REMARK
 
 PAPERS = {"a4": (210.0, 297.0), "letter": (215.9, 279.4)}
 """Width and height [mm]; ISO 216 and ANSI/ASME Y14.1."""
 SUFFIXES = (".pdf", ".svg", ".png")
+MOST_RUNGS = 25
 
 _MM = 1 / 25.4
 _POINT = 25.4 / 72
@@ -172,23 +174,45 @@ def _columns(width: float) -> _Columns:
     return _Columns(_MARGIN, 35, 62, 101.5, 119, twin - 119 - 3, twin, twin_width)
 
 
-def draw_chart(prediction: Prediction, paper: str = "a4", date: str | None = None) -> Any:
+@dataclass(frozen=True)
+class Verdict:
+    """What the chart says of its weakest pair.
+
+    Attributes:
+        worst: the pair and its separation.
+        threshold: separation from which steps are told apart side by side.
+        held: under what it holds, such as "at the exact dose".
+    """
+
+    worst: Worst
+    threshold: float
+    held: str
+
+
+def check_rungs(count: int) -> None:
+    """Raise MixindError when a chart cannot have so many rungs."""
+    if not 2 <= count <= MOST_RUNGS:
+        raise MixindError(f"chart: {count} rungs; a chart has 2 to {MOST_RUNGS}. Choose another step.")
+
+
+def draw_chart(prediction: Prediction, paper: str = "a4", date: str | None = None, verdict: Verdict | None = None) -> Any:
     """Return the chart of a prediction as a matplotlib figure of the exact size of the paper.
 
     Args:
-        prediction: one rung per pH, at most 25.
+        prediction: one rung per pH, 2 to 25.
         paper: one of `PAPERS`.
         date: as YYYY-MM-DD; see `page_date`.
+        verdict: on the weakest pair; by default that of the prediction at the exact dose.
     Raises: MixindError for an unknown paper, too many rungs, or a bad date.
     """
     if paper not in PAPERS:
         raise MixindError(f"paper: {paper!r} is not one of {', '.join(PAPERS)}.")
-    if not 2 <= prediction.pH.size <= 25:
-        raise MixindError(f"chart: {prediction.pH.size} rungs; a chart has 2 to 25. Choose another step.")
+    check_rungs(prediction.pH.size)
     page, printed = _Page(*PAPERS[paper]), page_date(date)
+    said = verdict or Verdict(prediction.worst(), METRICS["ciede2000"].threshold or 0.0, "at the exact dose")
     _head(page, prediction)
-    _ladder(page, prediction)
-    _foot(page, prediction, printed)
+    _ladder(page, prediction, said.threshold)
+    _foot(page, prediction, printed, said)
     return page.figure
 
 
@@ -200,7 +224,7 @@ def _head(page: _Page, prediction: Prediction) -> None:
     page.text(_MARGIN, top - 31, prediction.conditions.describe(), 7, room, color=_FAINT)
 
 
-def _ladder(page: _Page, prediction: Prediction) -> None:
+def _ladder(page: _Page, prediction: Prediction, threshold: float) -> None:
     count, top = prediction.pH.size, page.height - 42.0
     pitch = (top - _LADDER_FOOT) / count
     height = pitch - min(4.0, 0.22 * pitch)
@@ -211,7 +235,7 @@ def _ladder(page: _Page, prediction: Prediction) -> None:
         page.line((x, x), (_LADDER_FOOT + 0.5, top - 0.5), 3.2)
     for number, row in enumerate(prediction.rows()):
         _rung(page, columns, row, top - (number + 1) * pitch + (pitch - height) / 2, height)
-    _joints(page, columns, prediction, top, pitch)
+    _joints(page, columns, prediction, threshold, top, pitch)
     twin_at = columns.twin
     for eyes in twins:
         _twin(page, prediction, eyes, twin_at, columns.twin_width, top, pitch, height)
@@ -247,9 +271,8 @@ def _rung(page: _Page, columns: _Columns, row: dict[str, Any], y: float, height:
         page.text(columns.words, middle, f"{row['colour']}   {numbers}", 6.5, columns.words_width)
 
 
-def _joints(page: _Page, columns: _Columns, prediction: Prediction, top: float, pitch: float) -> None:
+def _joints(page: _Page, columns: _Columns, prediction: Prediction, limit: float, top: float, pitch: float) -> None:
     """Write between two rungs how far they look apart; the weakest is set off, and what looks alike is said to."""
-    limit = METRICS["ciede2000"].threshold or 0.0
     steps = np.diagonal(prediction.separation(), offset=1)
     weakest = int(steps.argmin())
     for number, value in enumerate(steps):
@@ -277,11 +300,11 @@ def _twin(page: _Page, prediction: Prediction, eyes: str, x: float, width: float
                   bbox={"facecolor": "white", "edgecolor": "none", "pad": 0.8})
 
 
-def _foot(page: _Page, prediction: Prediction, date: str) -> None:
+def _foot(page: _Page, prediction: Prediction, date: str, verdict: Verdict) -> None:
     y, middle = _LADDER_FOOT - 8.0, page.width / 2 + 6
     page.line((_MARGIN, page.width - _MARGIN), (y + 4, y + 4))
     _blend_table(page, prediction, _MARGIN, y, middle - _MARGIN - 6)
-    _reading(page, prediction, middle, y, page.width - _MARGIN - middle)
+    _reading(page, prediction, verdict, middle, y, page.width - _MARGIN - middle)
     span = ",".join(pH_text(value) for value in prediction.pH) if prediction.pH.size <= 9 else "FROM:TO:STEP"
     about = (f"mixind {VERSION} · {date} · dye data {prediction.blend.digest()} · reprint at 100 % size: mixind chart BLEND "
              f"OUT.pdf --ph {span} --date {date} · look at it in daylight")
@@ -307,13 +330,12 @@ def _blend_table(page: _Page, prediction: Prediction, x: float, y: float, room: 
     page.paragraph(x, y - 1.2, kept, 6.5, room)
 
 
-def _reading(page: _Page, prediction: Prediction, x: float, y: float, room: float) -> None:
+def _reading(page: _Page, prediction: Prediction, verdict: Verdict, x: float, y: float, room: float) -> None:
     page.text(x, y, "How to read it", 8.5, fontweight="bold")
-    worst = prediction.worst()
-    limit = METRICS["ciede2000"].threshold or 0.0
-    verdict = f"told apart side by side from {limit:g}, against this print from {PRINTED_CHART_THRESHOLD:g}"
+    worst = verdict.worst
+    limits = f"told apart side by side from {verdict.threshold:g}, against this print from {PRINTED_CHART_THRESHOLD:g}"
     lines = [
-        f"Numbers between rungs: separation (CIEDE2000, kL 2); {verdict}. Weakest of all pairs at the exact dose: pH "
+        f"Numbers between rungs: separation (CIEDE2000, kL 2); {limits}. Weakest of all pairs {verdict.held}: pH "
         f"{pH_text(worst.pair[0])} and {pH_text(worst.pair[1])}, {worst.separation:.1f}.",
         "± is the standard uncertainty of the colour. Grades: A sources agree, B one source, C memory, analogy or a guessed "
         "band shape. Check each batch with three buffers.",
@@ -331,16 +353,18 @@ def _gamut_note(prediction: Prediction) -> str:
 
 
 def write_chart(path: str | Path, prediction: Prediction, replace_file: bool = False, date: str | None = None,
-                paper: str = "a4") -> None:
-    """Draw the chart and write it as PDF, SVG or PNG by the suffix of `path`.
+                paper: str = "a4", verdict: Verdict | None = None) -> None:
+    """Draw the chart and write it whole, as PDF, SVG or PNG by the suffix of `path`.
 
-    Raises: MixindError as `draw_chart`, `check_suffix` and `files.check_target`.
+    Args: as `draw_chart`; `replace_file` allows an existing file to be replaced.
+    Raises: MixindError as `draw_chart`, `check_suffix` and `files.write_whole`.
     """
     suffix, path = check_suffix(path), check_target(path, replace_file)
-    write_whole(path, _rendered(draw_chart(prediction, paper, date), suffix), replace_file)
+    write_whole(path, rendered(draw_chart(prediction, paper, date, verdict), suffix), replace_file)
 
 
-def _rendered(figure: Any, suffix: str) -> bytes:
+def rendered(figure: Any, suffix: str) -> bytes:
+    """Return a figure as the bytes of a file with this suffix, one of `SUFFIXES`."""
     import matplotlib
 
     metadata: Any = {

@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import math
 import os
 import sys
 import tomllib
@@ -106,10 +105,17 @@ class Table:
         value = self._take(key, (int, float), default, "a number")
         if value is None or key not in self._data:
             return value
-        if not (math.isfinite(value) and low <= value <= high):
-            self.fault(key, f"is {value}, outside {low:g} to {high:g}. Check the decimal point.")
+        if not low <= value <= high:
+            self.fault(key, f"is {_shown(value)}, outside {low:g} to {high:g}. Check the decimal point.")
             return None if default is _MISSING else default
         return float(value)
+
+    def whole(self, key: str, low: int, high: int, default: Any = _MISSING) -> Any:
+        """Return a whole number from `low` to `high`."""
+        value = self.number(key, low, high, default)
+        if isinstance(value, float) and not value.is_integer():
+            self.fault(key, f"is {value:g}, not a whole number.")
+        return value if value is None else int(value)
 
     def texts(self, key: str) -> tuple[str, ...]:
         """Return a list of strings; empty when the key is absent."""

@@ -9,7 +9,7 @@ from typing import Any
 
 import numpy as np
 
-from mixind import colorimetry, dyes, equilibria
+from mixind import colorimetry, display, dyes, equilibria
 from mixind.blend import Blend
 from mixind.colour_words import colour_word
 from mixind.conditions import Conditions
@@ -19,8 +19,9 @@ from mixind.equilibria import Solution
 from mixind.separation import Worst, separation_matrix, worst_pair
 from mixind.viewing import Vessel, Viewer
 
-STRENGTH_SD = 0.02
-"""Relative standard uncertainty of one dye in the stock by weighing and dissolving: common practice, no source."""
+STRENGTH_SD = 0.05
+"""Relative standard uncertainty of one dye in the stock, by weighing, dissolving and the content of its powder (once
+corrected for): common practice, no source."""
 DOSE_SD = 0.05
 """Relative standard uncertainty of the dose from a graduated pipette: common practice, no source."""
 
@@ -28,7 +29,14 @@ _PROBE = 1e-3
 
 
 def absorptivities(used: Sequence[Dye], pH: np.ndarray, solution: Solution) -> np.ndarray:
-    """Return the absorptivity of each dye at each pH on the wavelength grid, (n, P, 81) [L mol-1 cm-1]."""
+    """Return the absorptivity of each dye at each pH on the wavelength grid.
+
+    Args:
+        used: n dyes.
+        pH: (P,).
+        solution: what the equilibria depend on.
+    Returns: (n, P, 81) [L mol-1 cm-1].
+    """
     return np.stack([dye.absorptivity_at(pH, solution) for dye in used])
 
 
@@ -78,9 +86,9 @@ class Prediction:
         return colorimetry.cielab(self.XYZ, self.white)
 
     @cached_property
-    def patch(self) -> colorimetry.Patch:
+    def patch(self) -> display.Patch:
         """The colours ready for a screen or a page."""
-        return colorimetry.patch(self.XYZ, self.white)
+        return display.patch(self.XYZ, self.white)
 
     @cached_property
     def words(self) -> list[str]:
@@ -98,7 +106,13 @@ class Prediction:
         return separation_matrix(chosen.space(self.XYZ, self.white), chosen, chosen.kL if kL is None else kL)
 
     def worst(self, step: float | None = None, metric: str = "ciede2000", kL: float | None = None) -> Worst:
-        """Return the worst pair at least one `step` apart; the step is the smallest gap of pH unless given."""
+        """Return the two pH hardest to tell apart among those at least one step apart.
+
+        Args:
+            step: smallest pH difference that counts, above zero; the smallest gap of `pH` unless given.
+            metric: one of `METRICS`.
+            kL: weight of lightness; that of the metric unless given.
+        """
         chosen = METRICS[metric]
         gap = float(np.diff(self.pH).min()) if step is None else step
         return worst_pair(self.pH, chosen.space(self.XYZ, self.white), gap, chosen, chosen.kL if kL is None else kL)
@@ -123,27 +137,27 @@ def predict(blend: Blend, pH: np.ndarray, conditions: Conditions, dose_factor: f
         blend: what goes in.
         pH: of the samples, (P,), rising.
         conditions: sample, vessel, lamp and eye.
-        dose_factor: multiple of the nominal dose.
+        dose_factor: multiple of the nominal dose, above zero [1].
+    Raises: MixindError for a lamp that nobody knows.
     """
     vessel, viewer, solution = conditions.make_vessel(), conditions.make_viewer(), conditions.solution()
     concentrations = blend.sample_concentrations(dose_factor)
-    table = absorptivities(blend.dyes, pH, solution)
-    per_cm = absorbance(table, concentrations)
-    XYZ = vessel.light(per_cm) @ viewer.weights
+    per_cm = absorbance(absorptivities(blend.dyes, pH, solution), concentrations)
+    changes = absorbance_changes(blend, pH, solution, dose_factor)
     return Prediction(
-        blend, conditions, pH, XYZ, viewer.white, colour_sd(blend, pH, conditions, dose_factor),
+        blend, conditions, pH, vessel.light(per_cm) @ viewer.weights, viewer.white, colour_sd(per_cm, changes, vessel, viewer),
         dyes.visible_peak(per_cm) * vessel.optical_length, _grades(blend, pH, solution, concentrations))
 
 
-def colour_sd(blend: Blend, pH: np.ndarray, conditions: Conditions, dose_factor: float = 1.0) -> np.ndarray:
-    """Return the standard uncertainty of the colour at each pH as CIEDE2000 (1:1:1), (P,).
+def colour_sd(per_cm: np.ndarray, changes: np.ndarray, vessel: Vessel, viewer: Viewer) -> np.ndarray:
+    """Return the standard uncertainty of each colour as CIEDE2000 (1:1:1), by linear propagation with exact derivatives.
 
-    Linear propagation with exact derivatives of the uncertainties of the constants, of the heights and shapes of the
-    forms, of each dye's strength (2 %) and of the dose (5 %).
+    Args:
+        per_cm: absorbance, (P, W) [1/cm].
+        changes: what one standard uncertainty of each uncertain figure does to it, (Q, P, W) [1/cm]. An uncertainty that
+            all pH share is one row, so that each colour gets it whole.
+    Returns: (P,).
     """
-    vessel, viewer = conditions.make_vessel(), conditions.make_viewer()
-    changes = _absorbance_changes(blend, pH, conditions.solution(), dose_factor)
-    per_cm = absorbance(absorptivities(blend.dyes, pH, conditions.solution()), blend.sample_concentrations(dose_factor))
     light = vessel.light(per_cm)
     Lab, slope = colorimetry.cielab_and_jacobian(light @ viewer.weights, viewer.white)
     shifts = np.einsum("pij,qpj->qpi", slope, (changes * vessel.light_slope(light)) @ viewer.weights)
@@ -151,21 +165,26 @@ def colour_sd(blend: Blend, pH: np.ndarray, conditions: Conditions, dose_factor:
     return np.asarray(np.sqrt((small**2).sum(axis=0)))
 
 
-def _absorbance_changes(blend: Blend, pH: np.ndarray, solution: Solution, dose_factor: float) -> np.ndarray:
-    """Return what one standard uncertainty of each uncertain figure does to the absorbance per cm, (Q, P, 81)."""
+def absorbance_changes(blend: Blend, pH: np.ndarray, solution: Solution, dose_factor: float = 1.0) -> np.ndarray:
+    """Return what one standard uncertainty of each uncertain figure does to the absorbance, (Q, P, 81) [1/cm].
+
+    The figures are the constants and the heights of the forms as the dye files state them (the uncertainty of a shape is
+    counted as one of height), each dye's strength and the dose.
+    """
     changes, total = [], 0.0
     for dye, concentration in zip(blend.dyes, blend.sample_concentrations(dose_factor), strict=True):
         shares, heights = dye.fractions(pH, solution), dye.absorptivity(solution)
         slopes = equilibria.fraction_slopes(shares)
         for number, step in enumerate(dye.active_steps(solution)):
-            changes.append(concentration * step.sd * (slopes[:, number] @ heights))
+            changes.append(concentration * step.working_sd(solution) * (slopes[:, number] @ heights))
         for number, form in enumerate(dye.forms[:heights.shape[0]]):
             sd = np.hypot(form.sd, form.shape_sd)
             changes.append(concentration * sd * shares[:, number, None] * heights[number])
         own = concentration * (shares @ heights)
         changes.append(STRENGTH_SD * own)
         total = total + own
-    changes.append(DOSE_SD * np.asarray(total))
+    # a dose larger by a per cent raises the concentration by less, since it dilutes the sample, too
+    changes.append(DOSE_SD * (1 - blend.dose.share(dose_factor)) * np.asarray(total))
     return np.array(changes)
 
 

@@ -247,6 +247,6 @@ def significant(value: float, digits: int = 3) -> str:
     """
     if value == 0:
         return "0"
-    places = digits - 1 - math.floor(math.log10(abs(value)))
-    rounded = round(value, places)
+    rounded = float(f"{value:.{digits - 1}e}")
+    places = digits - 1 - math.floor(math.log10(abs(rounded)))
     return f"{rounded:.{max(places, 0)}f}"

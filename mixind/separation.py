@@ -38,7 +38,12 @@ def separations(coordinates: np.ndarray, pairs: np.ndarray, metric: Metric, kL: 
 
 
 def separation_matrix(coordinates: np.ndarray, metric: Metric, kL: float) -> np.ndarray:
-    """Return the difference of every two colours, (N, N), of coordinates (N, 3)."""
+    """Return the difference of every two colours, (N, N).
+
+    Args:
+        coordinates: colours in the metric's space, (N, 3).
+        kL: weight of lightness, above zero.
+    """
     return metric.difference(coordinates[:, None, :], coordinates[None, :, :], kL)
 
 

@@ -74,18 +74,23 @@ def viewer(illuminant: str = "D65", observer: str = "2", eyes: str = "normal", s
         severity: 0 (normal) to 1 (a dichromat).
     Raises: MixindError for an unknown name or a severity outside 0 to 1.
     """
-    if eyes not in EYES:
-        raise MixindError(f"eyes: {eyes!r} is not one of {', '.join(EYES)}{nearest(eyes, EYES)}")
-    if observer not in OBSERVERS:
-        raise MixindError(f"observer: {observer!r} is not one of {', '.join(OBSERVERS)} (degrees).")
-    if not (math.isfinite(severity) and 0 <= severity <= 1):
-        raise MixindError(f"severity: {severity} is outside 0 to 1.")
+    check_viewer(observer, eyes, severity)
     weights = _frozen_weights(illuminant, observer)
     if weights is None:
         weights = weights_from_colour_science(illuminant, observer)
     if eyes != "normal":
         weights = weights @ eye_matrix(eyes, severity, weights.sum(axis=0)).T
     return Viewer(illuminant, observer, eyes, severity, weights)
+
+
+def check_viewer(observer: str, eyes: str, severity: float) -> None:
+    """Raise MixindError for an observer or eyes that are not known, or a severity outside 0 to 1."""
+    if eyes not in EYES:
+        raise MixindError(f"eyes: {eyes!r} is not one of {', '.join(EYES)}{nearest(eyes, EYES)}")
+    if observer not in OBSERVERS:
+        raise MixindError(f"observer: {observer!r} is not one of {', '.join(OBSERVERS)} (degrees).")
+    if not (math.isfinite(severity) and 0 <= severity <= 1):
+        raise MixindError(f"severity: {severity} is outside 0 to 1.")
 
 
 @lru_cache(maxsize=32)

@@ -43,7 +43,7 @@ def test_agrees_with_colour_science() -> None:
 
 @pytest.mark.parametrize("kL", [1.0, 2.0])
 def test_slopes_are_exact(kL: float) -> None:
-    """Central differences on 1 000 random pairs, as DEVELOPERS.md says: chroma > 1, dE > 0.1, hues < 179 degrees apart."""
+    """Central differences on 1 000 random pairs with chroma > 1, dE > 0.1 and hues less than 179 degrees apart."""
     one, two = (side[:1000] for side in random_pairs(1300))
     assert one.shape[0] == 1000
     value, by_one, by_two = ciede2000_and_slopes(one, two, kL)
@@ -62,6 +62,14 @@ def test_slopes_are_finite_where_the_formula_has_kinks() -> None:
     one, two = (side.reshape(-1, 3) for side in np.broadcast_arrays(awkward[:, None], awkward[None]))
     for part in ciede2000_and_slopes(one, two):
         assert np.all(np.isfinite(part))
+
+
+def test_exactly_opposite_hues() -> None:
+    """On both axes and both ways round, against colour-science."""
+    ends = np.array([[50.0, 10, 0], [50, -10, 0], [50, 0, 10], [50, 0, -10]])
+    one, two = ends[[0, 1, 2, 3]], ends[[1, 0, 3, 2]]
+    colour = viewing.colour_science()
+    np.testing.assert_allclose(ciede2000(one, two, kL=1.0), colour.difference.delta_E_CIE2000(one, two), atol=1e-9)
 
 
 def test_lightness_counts_half_by_default() -> None:

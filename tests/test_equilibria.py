@@ -39,7 +39,7 @@ def test_slopes_are_exact() -> None:
 
 
 def test_debye_hueckel_slope_and_davies() -> None:
-    """A = 0.5092 at 25 C (Yao and Byrne, Environ. Sci. Technol. 35 (2001) 1197, abstract); ours has a newer permittivity.
+    """A = 0.5092 at 25 C (Yao and Byrne, Environ. Sci. Technol. 35 (2001) 1197, abstract).
 
     Davies, -log gamma of a singly charged ion: 0.107 at I = 0.1 from A = 0.509 by hand.
     """

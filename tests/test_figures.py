@@ -17,6 +17,7 @@ from mixind.conditions import Conditions
 from mixind.errors import MixindError
 from mixind.library import Library
 from mixind.prediction import Prediction, predict
+from mixind.separation import Worst
 
 TITLE = "Ünïcode $100 % of <pH> & a_b^c {x} \\frac 水 over sixty characters long, much longer"
 
@@ -34,7 +35,8 @@ def prediction(blend: Blend) -> Prediction:
 @pytest.mark.parametrize("paper", figures.PAPERS)
 def test_pdf_has_the_size_of_the_paper_and_its_fonts(tmp_path: Path, prediction: Prediction, paper: str) -> None:
     path = tmp_path / "c.pdf"
-    figures.write_chart(path, prediction, date="2026-03-01", paper=paper)
+    verdict = figures.Verdict(Worst(12.3, (5.0, 6.0)), 3.0, "with the dose off by up to 20%")
+    figures.write_chart(path, prediction, date="2026-03-01", paper=paper, verdict=verdict)
     page = pypdf.PdfReader(path).pages[0]
     width, height = (float(side) / 72 * 25.4 for side in page.mediabox[2:])
     assert (width, height) == pytest.approx(figures.PAPERS[paper], abs=0.05)
@@ -43,7 +45,8 @@ def test_pdf_has_the_size_of_the_paper_and_its_fonts(tmp_path: Path, prediction:
         descriptor = font.get_object()["/DescendantFonts"][0].get_object()["/FontDescriptor"]
         assert "/FontFile2" in descriptor
     text = page.extract_text()
-    for part in ("0.2 mL in 10 mL", "methyl red", "Weakest", "2026-03-01", prediction.blend.digest(), "D65", "simulation, not a test"):
+    for part in ("0.2 mL in 10 mL", "methyl red", "Weakest", "2026-03-01", prediction.blend.digest(), "D65", "simulation, not a test",
+                 "with the dose off by up to 20%: pH 5 and 6, 12.3"):
         assert part in text.replace("\n", " ")
 
 

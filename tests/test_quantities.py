@@ -87,6 +87,6 @@ def test_share_and_path() -> None:
             q.path_length(text)
 
 
-@pytest.mark.parametrize(("value", "shown"), [(0, "0"), (1234.5, "1230"), (0.01234, "0.0123"), (99.96, "100"), (5, "5.00")])
+@pytest.mark.parametrize(("value", "shown"), [(0, "0"), (1234.5, "1230"), (0.01234, "0.0123"), (99.96, "100"), (0.9996, "1.00"), (5, "5.00"), (-0.5, "-0.500")])
 def test_significant(value: float, shown: str) -> None:
-    assert q.significant(value).rstrip(".") == shown or float(q.significant(value)) == float(shown)
+    assert q.significant(value) == shown

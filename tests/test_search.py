@@ -14,6 +14,7 @@ from mixind.difference import METRICS
 from mixind.dyes import Dye, visible_peak
 from mixind.errors import MixindError
 from mixind.library import Library
+from mixind.quantities import pH_grid
 from mixind.search.candidates import Choice, choose, conflict
 from mixind.search.formulate import Formulation, formulate
 from mixind.search.local import Effort, best_of_starts
@@ -77,6 +78,28 @@ def test_the_most_of_a_dye_is_its_peak_absorbance_or_its_limit(library: Library)
 @pytest.fixture(scope="module")
 def found() -> Formulation:
     return formulate(task(4, 10), choose(Library(), most=4), threshold=3.0)
+
+
+def test_a_faint_dye_is_not_drowned_in(library: Library) -> None:
+    """m-Nitrophenol shows almost nothing below pH 6: no stock beyond 1 %, no sample beyond 0.5 mmol/L."""
+    dye = library.find("m-nitrophenol")
+    for asked in (task(3, 6), task(4, 10), task(3, 6, tolerance=0.2)):
+        problem = Problem(asked, [dye])
+        assert problem.largest[0] <= 5e-4
+        assert problem.largest[0] * dye.molar_mass <= 10.0 * asked.dose.share() * (1 + 1e-9)
+
+
+def test_a_bound_such_as_solubility_holds_for_the_largest_dose(library: Library) -> None:
+    dye = library.find("thymolphthalein")
+    problem = Problem(task(4, 12, tolerance=0.2), [dye])
+    assert problem.largest[0] * problem.factors.max() == pytest.approx(dye.largest_concentration)
+
+
+def test_a_step_that_nearly_fits_keeps_its_neighbours() -> None:
+    for step in (2 / 3, 0.6666667, 0.33333):
+        pH = pH_grid(4, 10, step)
+        exact = float(np.diff(pH)[0])
+        assert [0, 1] in Problem(replace(task(4, 10), pH=pH, step=min(step, exact)), [Library().find("BTB")]).pairs.tolist()
 
 
 def test_a_formulation_keeps_its_limits(found: Formulation) -> None:
@@ -198,8 +221,8 @@ def test_what_cannot_be_told_apart_says_so(library: Library) -> None:
         formulate(task(0, 3), choose(library, only=["phenolphthalein"], most=1), threshold=3.0)
 
 
-def test_a_choice_without_compatible_family_is_impossible() -> None:
-    """Required dyes are in every family."""
+def test_demanded_dyes_are_in_every_family() -> None:
     choice: Choice = choose(Library(), with_=["neutral red"])
+    assert choice.families()
     for family in choice.families():
         assert set(choice.required) <= set(family)

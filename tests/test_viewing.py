@@ -33,7 +33,7 @@ def test_every_white_stays_white(lamp: str, observer: str, eyes: str, severity: 
 
 
 def test_d65_has_the_published_white() -> None:
-    """CIE 15:2018, table 4: x = 0.31272, y = 0.32903 for D65 and the 2 degree observer, to its printed digits."""
+    """CIE 15:2018, table 4: x = 0.31272, y = 0.32903 for D65 and the 2 degree observer, to one and a half units of the last printed digit."""
     white = viewing.viewer("D65").white
     np.testing.assert_allclose(white[:2] / white.sum(), [0.31272, 0.32903], atol=1.5e-5)
 

@@ -76,6 +76,7 @@ def show(name: str, libraries: tuple[str, ...], as_json: bool) -> None:
     _show_identity(dye)
     _show_steps(dye)
     _show_forms(dye)
+    _show_spectral_facts(dye)
     _show_rest(dye)
 
 
@@ -98,10 +99,14 @@ def _show_steps(dye: Dye) -> None:
     for number, step in enumerate(dye.steps):
         pair = f"{dye.forms[number].label}/{dye.forms[number + 1].label}"
         slow = ", slow: left out of a fresh solution" if step.slow else ""
-        temperature = f", {step.dpka_dt:+.4f} per K" if step.dpka_dt else ""
+        temperature = "" if step.dpka_dt is None else f", {step.dpka_dt:+.4f} per K [{_source(dye, step.temperature_source)}]"
+        if step.salt_factor is not None:
+            temperature += f", moves with salt by {step.salt_factor:g} Davies terms [{_source(dye, step.salt_factor_source)}]"
         printing.result(f"  pKa {pair}: {step.pka:.2f} +- {step.sd:.2f} at I = 0, {step.working_pka(Solution()):.2f} at I = "
                         f"{DEFAULT_IONIC_STRENGTH:g}{temperature}{slow}; stated {step.stated:g} ({step.kind}, I = "
                         f"{step.ionic_strength:g}) [{_source(dye, step.source)}]")
+        if step.note:
+            printing.result(f"    {step.note}")
         for medium, (pka, sd, source) in step.media.items():
             printing.result(f"    in {medium}: {pka:g} +- {sd:g} [{_source(dye, source)}]")
 
@@ -115,6 +120,17 @@ def _show_forms(dye: Dye) -> None:
                         f"{form.grade} [{_source(dye, form.peak_source)}]")
         note = f": {form.note}" if form.note else ""
         printing.result(f"    shape +- {form.shape_sd:.0%} [{_source(dye, form.source)}]{note}")
+
+
+def _show_spectral_facts(dye: Dye) -> None:
+    for ratio in dye.ratios:
+        printing.result(f"  absorptivity {ratio.form} at {ratio.wavelength:g} nm over {ratio.to_form} at "
+                        f"{ratio.to_wavelength:g} nm: {ratio.value:g} +- {ratio.sd:g} [{_source(dye, ratio.source)}]")
+    for point in dye.isosbestics:
+        printing.result(f"  {point.forms[0]} and {point.forms[1]} absorb alike at {point.wavelength:g} nm "
+                        f"[{_source(dye, point.source)}]")
+    for other, source in dye.mixtures.items():
+        printing.result(f"  printed in a mixture with {other} in spite of opposite charges [{_source(dye, source)}]")
 
 
 def _show_rest(dye: Dye) -> None:

@@ -8,6 +8,7 @@ from pathlib import Path
 from typing import Any
 
 import click
+import numpy as np
 
 from mixind import quantities
 from mixind.blend import DEFAULT_DOSE, Blend, blend_text
@@ -15,12 +16,19 @@ from mixind.cli import options, printing
 from mixind.conditions import Conditions
 from mixind.difference import METRICS
 from mixind.errors import MixindError, NoAnswer
+from mixind.figures import Verdict, check_rungs, check_suffix, page_date, write_chart
 from mixind.files import check_target, write_whole
 from mixind.library import Library
 from mixind.prediction import Prediction, predict
 from mixind.quantities import pH_text
 from mixind.search.candidates import Choice, choose
-from mixind.search.formulate import DEFAULT_DARKEST, DEFAULT_PEAK_ABSORBANCE, Formulation, formulate
+from mixind.search.formulate import (
+    DEFAULT_DARKEST,
+    DEFAULT_DOSE_TOLERANCE,
+    DEFAULT_PEAK_ABSORBANCE,
+    Formulation,
+    formulate,
+)
 from mixind.search.problem import Task
 from mixind.search.subsets import PLANS
 from mixind.version import VERSION
@@ -37,18 +45,20 @@ from mixind.viewing import EYES, OBSERVERS
 @click.option("--without", multiple=True, metavar="DYE", help="Must not be in the blend; may be repeated.")
 @click.option("--allow-ion-pairs", is_flag=True, help="Combine cationic with anionic dyes, which can precipitate.")
 @click.option("--dose", default=str(DEFAULT_DOSE), show_default=True, metavar="DOSE", help="Stock into sample.")
-@click.option("--dose-tolerance", default="20%", show_default=True, metavar="SHARE", help="How far the dose may be off.")
+@click.option("--dose-tolerance", default=f"{DEFAULT_DOSE_TOLERANCE:.0%}", show_default=True, metavar="SHARE",
+              help="How far the dose may be off.")
 @click.option("--darkest", type=float, default=DEFAULT_DARKEST, show_default=True, help="Least L* of a colour.")
 @click.option("--peak-absorbance", type=float, default=DEFAULT_PEAK_ABSORBANCE, show_default=True,
               help="Most that one dye may absorb.")
 @options.sample_options
 @click.option("--light", multiple=True, metavar="LAMP", help=f"{options.LAMPS}; may be repeated. [default: D65]")
 @click.option("--observer", type=click.Choice(list(OBSERVERS)), help="Degrees of field. [default: 2]")
-@click.option("--eyes", multiple=True, type=click.Choice(EYES, case_sensitive=False), help="Colour vision; may be repeated. [default: normal]")
+@click.option("--eyes", multiple=True, type=click.Choice(EYES, case_sensitive=False),
+              help="Colour vision; may be repeated. [default: normal]")
 @click.option("--severity", type=float, help="Of a colour vision deficiency, 0 to 1. [default: 1]")
 @options.metric_options
 @click.option("--effort", type=click.Choice(list(PLANS)), default="normal", show_default=True, help="How hard to search.")
-@click.option("--seed", type=int, default=1, show_default=True, help="Of the random starts.")
+@click.option("--seed", type=click.IntRange(min=0), default=1, show_default=True, help="Of the random starts.")
 @click.option("--save", type=click.Path(), metavar="FILE", help="Write the blend file.")
 @click.option("--chart", type=click.Path(), metavar="FILE", help="Draw the chart (pdf, svg or png).")
 @options.paper_option
@@ -61,40 +71,48 @@ def command(as_json: bool, replace: bool, save: str | None, chart: str | None, d
 
     Example: mixind formulate --from 4 --to 10 --most-dyes 4 --save my.toml --chart my.pdf
     """
-    targets = _check_targets(save, chart, replace)
     choice = _choice(given)
     conditions, task = _task(given)
     threshold = options.chosen_threshold(given["metric"], given["threshold"])
+    _check_targets(save, chart, replace, date, task)
     found = formulate(task, choice, threshold, given["effort"], given["seed"], printing.progress)
     # what is shown is what everybody sees; deficient eyes decide the separations
     shown = dataclasses.replace(conditions[0], eyes="normal", severity=1.0)
     blend = _titled(found, shown, conditions)
     prediction = predict(blend, task.pH, shown)
-    if targets[0]:
-        write_whole(targets[0], blend_text(blend).encode(), replace)
-    if targets[1]:
-        from mixind import figures
-
-        figures.write_chart(targets[1], prediction, replace, date, given["paper"])
+    if chart:
+        write_chart(chart, prediction, replace, date, given["paper"], _verdict(found))
+    if save:
+        write_whole(save, blend_text(blend).encode(), replace)
     if as_json:
-        printing.as_json({"mixind": VERSION, "blend": blend.facts(), **found.facts(),
-                          "conditions": shown.facts(), "viewers": [c.facts() for c in conditions], "rows": prediction.rows()})
+        printing.as_json({"mixind": VERSION, "blend": blend.facts(), **found.facts(), "conditions": shown.facts(),
+                          "viewers": [c.facts() for c in conditions], "rows": prediction.rows()})
     else:
         _print(found, blend, prediction, choice)
     if not found.told_apart:
         low, high = (pH_text(value) for value in found.worst.pair)
-        raise NoAnswer(f"pH {low} and {high} are not told apart: separation "
-                       f"{found.worst.separation:.1f}, {threshold:g} needed. Try a coarser step, more dyes or a wider vessel.")
+        raise NoAnswer(f"pH {low} and {high} are not told apart: separation {found.worst.separation:.1f}, {threshold:g} "
+                       "needed. Try a coarser step, more dyes or a wider vessel.")
 
 
-def _check_targets(save: str | None, chart: str | None, replace: bool) -> tuple[Path | None, Path | None]:
-    from mixind.figures import check_suffix
-
+def _check_targets(save: str | None, chart: str | None, replace: bool, date: str | None, task: Task) -> None:
+    """Refuse now what could only be refused after the search, so that nothing is written by halves."""
     if chart:
         check_suffix(chart)
+        check_rungs(task.pH.size)
+        page_date(date)
     if save and chart and Path(save).resolve() == Path(chart).resolve():
         raise MixindError(f"--save and --chart both name {save}. Choose two files.")
-    return check_target(save, replace) if save else None, check_target(chart, replace) if chart else None
+    for target in filter(None, (save, chart)):
+        check_target(target, replace)
+
+
+def _verdict(found: Formulation) -> Verdict | None:
+    """Return what the chart is to say of the weakest pair; nothing when it was judged by another metric."""
+    if found.task.metric.name != "ciede2000":
+        return None
+    held = f"with the dose off by up to {found.task.tolerance:.0%}" if found.task.tolerance else "at the exact dose"
+    return Verdict(found.worst, found.threshold, held)
 
 
 def _choice(given: dict[str, Any]) -> Choice:
@@ -116,8 +134,10 @@ def _task(given: dict[str, Any]) -> tuple[list[Conditions], Task]:
                   for light, eyes in product(given["light"] or ("D65",), given["eyes"] or ("normal",))]
     metric = METRICS[given["metric"]]
     first = conditions[0]
+    # a step such as 0.333 is taken as the third that fits
+    step = min(given["step"], float(np.diff(pH)[0]))
     return conditions, Task(
-        pH, given["step"], first.solution(), first.make_vessel(), tuple(c.make_viewer() for c in conditions),
+        pH, step, first.solution(), first.make_vessel(), tuple(c.make_viewer() for c in conditions),
         quantities.dose(given["dose"]), quantities.share(given["dose_tolerance"], "dose tolerance"), metric, metric.kL,
         given["peak_absorbance"], given["darkest"])
 
@@ -125,7 +145,7 @@ def _task(given: dict[str, Any]) -> tuple[list[Conditions], Task]:
 def _titled(found: Formulation, shown: Conditions, asked: list[Conditions]) -> Blend:
     """Return the blend with its title, the conditions it is shown under and for whom it was made."""
     title = found.blend.title if found.told_apart else f"{found.blend.title}: NOT told apart, best effort"
-    keys = ("vessel", "path", "light", "observer", "temperature", "ionic_strength")
+    keys = ("vessel", "path", "light", "observer", "temperature", "ionic_strength", "aged")
     remarks = (f"made for {'; '.join(c.make_viewer().describe() for c in asked)}",) if asked != [shown] else ()
     return dataclasses.replace(found.blend, title=title, conditions={key: getattr(shown, key) for key in keys}, remarks=remarks)
 

@@ -38,7 +38,8 @@ def sample_options(command: F) -> F:
     return _several(
         click.option("--vessel", type=click.Choice(list(VESSELS), case_sensitive=False),
                      help="Looked through, or standing on white so that light crosses twice. [default: clear]"),
-        click.option("--path", metavar="LENGTH", help='Length of liquid that one looks through, such as "16 mm". [default: 1 cm]'),
+        click.option("--path", metavar="LENGTH",
+                     help='Length of liquid that one looks through, such as "16 mm". [default: 1 cm]'),
         click.option("--temperature", type=float, metavar="C", help="Of the sample. [default: 25]"),
         click.option("--ionic-strength", type=float, metavar="MOL/L", help="Of the sample. [default: 0.1]"),
         click.option("--aged", is_flag=True, default=None, help="Let slow steps (fading) come to rest."),

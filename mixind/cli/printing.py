@@ -6,6 +6,7 @@ import os
 import sys
 from collections.abc import Iterable
 from dataclasses import replace
+from itertools import pairwise
 from typing import Any
 
 import click
@@ -71,7 +72,7 @@ def table(rows: Iterable[Iterable[str]], indent: str = "  ") -> None:
 def print_blend(blend: Blend) -> None:
     """Print what goes into the stock and how it is dosed."""
     result(f"Blend: {blend.title}")
-    rows = [["dye", "% w/v", "mg/L of stock", "umol/L in sample", "grade"]]
+    rows = [["dye", "% w/v", "mg/L pure dye", "umol/L in sample", "grade"]]
     concentrations = blend.sample_concentrations()
     for component, concentration in zip(blend.components, concentrations, strict=True):
         form = f" ({component.form})" if component.form else ""
@@ -79,7 +80,12 @@ def print_blend(blend: Blend) -> None:
                      significant(concentration * 1e6), component.dye.grade])
     table(rows)
     result(f"  dose: {blend.dose}, {blend.dose.in_drops()}")
-    result(f"  in all {significant(concentrations.sum() * 1e6)} umol/L of dye in the sample, whose alkalinity has to be many times that")
+    total = significant(concentrations.sum() * 1e6)
+    result(f"  in all {total} umol/L of dye in the sample, whose alkalinity has to be many times that")
+    for component in blend.components:
+        if component.content is not None:
+            weighed = significant(component.grams_per_litre * 1e3 / component.content)
+            result(f"  {component.dye.name}: weigh {weighed} mg of the {component.content:.0%} powder per litre of stock")
 
 
 def print_colours(prediction: Prediction, metric: str, kL: float) -> None:
@@ -90,7 +96,8 @@ def print_colours(prediction: Prediction, metric: str, kL: float) -> None:
     for row, following in zip(prediction.rows(), steps, strict=True):
         L, a, b = (f"{value + 0.0:.1f}" for value in np.round(row["Lab"], 1))
         mapped = "" if row["in_gamut"] else "*"
-        rows.append([pH_text(row["pH"]), row["colour"], row["hex"] + mapped, L, a, b, f"{row['sd_dE00']:.1f}", following, row["grade"]])
+        sd = f"{row['sd_dE00']:.1f}"
+        rows.append([pH_text(row["pH"]), row["colour"], row["hex"] + mapped, L, a, b, sd, following, row["grade"]])
     if colour_terminal():
         _table_with_swatches(rows)
     else:
@@ -120,8 +127,8 @@ def too_close(prediction: Prediction) -> list[str]:
     """Return a remark when neighbouring rungs look alike side by side; empty when none do."""
     limit = METRICS["ciede2000"].threshold or 0.0
     steps = np.diagonal(prediction.separation(), offset=1)
-    pairs = [f"{pH_text(low)}-{pH_text(high)}" for low, high, value in zip(prediction.pH, prediction.pH[1:], steps, strict=False)
-             if value < limit]
+    pairs = [f"{pH_text(low)}-{pH_text(high)}"
+             for (low, high), value in zip(pairwise(prediction.pH), steps, strict=True) if value < limit]
     return [f"not told apart side by side: pH {', '.join(pairs)}"] if pairs else []
 
 
@@ -148,7 +155,8 @@ def _salt_remark(prediction: Prediction) -> str:
     """Return by how much the constants lie higher in tap water than in the sample assumed."""
     solution = prediction.conditions.solution()
     tap = replace(solution, ionic_strength=TAP_WATER)
-    shifts = [step.working_pka(tap) - step.working_pka(solution) for dye in prediction.blend.dyes for step in dye.active_steps(solution)]
+    shifts = [step.working_pka(tap) - step.working_pka(solution)
+              for dye in prediction.blend.dyes for step in dye.active_steps(solution)]
     largest = max(shifts, key=abs, default=0.0)
     return f"at ionic strength {TAP_WATER:g} (tap water) pKa lie up to {largest:+.2f} off: give --ionic-strength"
 

@@ -102,7 +102,14 @@ def _weighable(problem: Problem, positions: tuple[int, ...], x: np.ndarray, choi
 
 
 def evaluated(task: Task, blend: Blend, threshold: float, record: dict[str, Any]) -> Formulation:
-    """Return how well a blend, found or given, does a task."""
+    """Return how well a blend, found or given, does a task.
+
+    Args:
+        task: what is asked; the dose is that of the blend.
+        blend: at least one dye; whether it keeps the limits of the task is not checked.
+        threshold: separation from which steps count as told apart, above zero.
+        record: what led to the blend, for the record.
+    """
     task = replace(task, dose=blend.dose)
     problem = Problem(task, blend.dyes)
     x = blend.sample_concentrations() / problem.largest

@@ -90,7 +90,14 @@ def random_start(problem: Problem, rng: np.random.Generator) -> np.ndarray:
 
 
 def best_of_starts(problem: Problem, seeds: np.random.SeedSequence, starts: int, effort: Effort) -> Found:
-    """Return the best local optimum of so many random starts."""
+    """Return the best local optimum of so many random starts.
+
+    Args:
+        problem: of n dyes.
+        seeds: the same seeds give the same optimum.
+        starts: one or more.
+        effort: is added to.
+    """
     rng = np.random.default_rng(seeds)
     best = Found(np.zeros(len(problem.dyes)), -np.inf)
     for _ in range(starts):

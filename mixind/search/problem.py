@@ -16,7 +16,10 @@ from mixind.separation import dose_pairs
 from mixind.viewing import Vessel, Viewer
 
 LARGEST_STOCK = 10.0
-"""Most of one dye in a stock, 1 % w/v, the strength of the strongest usual indicator stocks [g/L]: common practice, no source."""
+"""Most of one dye in a stock [g/L]: 1 % w/v, that of the strongest usual indicators; common practice, no source."""
+LARGEST_IN_SAMPLE = 5e-4
+"""Most of one dye in the sample [mol/L]: beyond it the dye itself would buffer the sample; our choice."""
+_FAINT = 0.05
 
 _WITHOUT_COLOUR = 1e-4
 """Most of a dye that absorbs nowhere in the visible [mol/L]."""
@@ -167,16 +170,17 @@ class Problem:
 def largest_concentration(task: Task, dye: Dye, absorptivity: np.ndarray) -> float:
     """Return the most of a dye the sample may hold at the nominal dose [mol/L].
 
-    Set by its peak absorbance over the pH span (of all its forms when it has no colour there), by solubility,
+    Set by its peak absorbance over the pH span (of its strongest form when it shows next to no colour there), by solubility,
     aggregation and the like where the file says so, and by the strongest stock one makes.
 
     Args:
         absorptivity: of the dye over the span, (P, W) [L mol-1 cm-1].
     """
-    own = [form.absorptivity for form in dye.forms]
-    peak = float(dyes.visible_peak(absorptivity).max()) or float(dyes.visible_peak(np.array(own)).max())
+    own = float(dyes.visible_peak(np.array([form.absorptivity for form in dye.forms])).max())
+    here = float(dyes.visible_peak(absorptivity).max())
+    peak = here if here > _FAINT * own else own
     by_colour = task.peak_absorbance / (peak * task.vessel.optical_length) if peak > 0 else _WITHOUT_COLOUR
     # a bound such as solubility has to hold for the largest dose, too; peak absorbance is judged at the nominal one
     most = task.dose.share(max(task.dose_factors)) / task.dose.share()
     by_stock = LARGEST_STOCK / dye.molar_mass * task.dose.share()
-    return min(by_colour, dye.largest_concentration / most, by_stock)
+    return min(by_colour, dye.largest_concentration / most, by_stock, LARGEST_IN_SAMPLE)

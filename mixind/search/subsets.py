@@ -74,7 +74,7 @@ def search(problem: Problem, choice: Choice, plan: Plan, seed: int, effort: Effo
     for _ in range(plan.random_sets):
         best = _better(best, explorer.swapped(relaxed[0][1], explorer.random_set(relaxed[0][1], rng)))
     for start, family in relaxed:
-        # what a family reaches without a limit on the number of dyes, it does not exceed with one
+        # a rule of thumb, no bound: a family that did worse without a limit on the number of dyes is not looked at with one
         if start.worst <= best.worst + TIE:
             continue
         best = _better(best, explorer.swapped(family, explorer.pruned(family, start.x)))
