@@ -16,7 +16,7 @@ from mixind.dyes import Dye
 from mixind.errors import MixindError
 from mixind.files import Table, parse_toml, read_bytes, toml_text
 from mixind.library import Library
-from mixind.quantities import Dose, Strength, dose, pH_series, share, significant, strength
+from mixind.quantities import Dose, Strength, content, dose, pH_series, significant, strength
 
 DEFAULT_DOSE = Dose(0.2, 10.0)
 
@@ -180,12 +180,13 @@ def _span(table: Table) -> str:
 
 def _component(table: Table, library: Library) -> Component | None:
     name, written = table.text("dye"), table.text("strength")
-    form, content = table.choice("form", dyes.SALTS, None), table.text("content", None)
+    form, written_content = table.choice("form", dyes.SALTS, None), table.text("content", None)
     table.close()
     if name is None or written is None:
         return None
     try:
-        return Component(library.find(name), strength(written), form, None if content is None else share(content, "content"))
+        dye_content = None if written_content is None else content(written_content)
+        return Component(library.find(name), strength(written), form, dye_content)
     except MixindError as error:
         table.faults.append(f"{table.where}: {error}")
         return None

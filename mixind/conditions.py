@@ -113,11 +113,15 @@ def _written(key: str, value: Any) -> str:
         return "true" if value else "false"
     if isinstance(value, str):
         return toml_text(value)
-    return f'"{value:.12g} cm"' if key == "path" else f"{value:.12g}"
+    return f'"{value!r} cm"' if key == "path" else repr(value)
 
 
 def differing(asked: Conditions, stated: dict[str, Any]) -> list[str]:
     """Return a remark for each condition that was stated with a blend and asked for otherwise."""
     stated_conditions = replace(asked, **stated)
-    return [f"the blend was made for {key} {getattr(stated_conditions, key)}, shown is {getattr(asked, key)}"
+    return [f"the blend was made for {key} {getattr(stated_conditions, key)}{_UNITS.get(key, '')}, shown is "
+            f"{getattr(asked, key)}{_UNITS.get(key, '')}"
             for key in stated if getattr(stated_conditions, key) != getattr(asked, key)]
+
+
+_UNITS = {"path": " cm", "temperature": " C", "ionic_strength": " mol/L"}

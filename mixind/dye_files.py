@@ -155,7 +155,7 @@ class _Reader:
 
     def steps(self, forms: tuple[dyes.Form, ...]) -> tuple[dyes.Step, ...]:
         charges = iter([form.charge for form in forms] + [0] * 99)
-        steps: tuple[dyes.Step, ...] = self.rows("step", lambda table: self.step(table, next(charges)))
+        steps: tuple[dyes.Step, ...] = self.rows("step", lambda table: self.step(table, next(charges, 0)))
         if len(forms) != len(steps) + 1:
             self.root.fault("form", f"{len(forms)} forms for {len(steps)} steps. Give one form more than steps.")
         for number, (step, after) in enumerate(pairwise(steps), 2):

@@ -1,16 +1,10 @@
-"""The chart: a ladder with one rung per pH, drawn true to size. The one door to matplotlib and Pillow.
-
-Everything is placed in millimetres from the lower left corner of the page; nothing depends on the clock, the machine or
-a random number, so that the same input and date give the same bytes.
-"""
+"""The chart: a ladder with one rung per pH, drawn true to size; the same input and date give the same bytes."""
 
 from __future__ import annotations
 
 import datetime
-import io
 import os
-from dataclasses import dataclass, field, replace
-from functools import lru_cache
+from dataclasses import dataclass, replace
 from pathlib import Path
 from typing import Any
 
@@ -20,6 +14,7 @@ from mixind.blend import mg_per_litre
 from mixind.difference import METRICS, PRINTED_CHART_THRESHOLD
 from mixind.errors import MixindError
 from mixind.files import check_target, write_whole
+from mixind.paper import FAINT, INK, POINT, RAIL, Page, own_style, rendered
 from mixind.prediction import Prediction, predict
 from mixind.quantities import pH_text, significant
 from mixind.separation import Worst
@@ -31,13 +26,9 @@ PAPERS = {"a4": (210.0, 297.0), "letter": (215.9, 279.4)}
 SUFFIXES = (".pdf", ".svg", ".png")
 MOST_RUNGS = 25
 
-_MM = 1 / 25.4
-_POINT = 25.4 / 72
-_DPI = 200
-_INK, _FAINT, _RAIL = "#1a1a1a", "#666666", "#b8b8b8"
 _MARGIN = 14.0
 _LADDER_FOOT = 84.0
-_SMALLEST_SIZE = 4.5
+_MOST_ROWS = 10
 _TWIN_EYES = ("deutan", "protan", "normal")
 _SOURCE_DATE = "SOURCE_DATE_EPOCH"
 
@@ -58,100 +49,19 @@ def page_date(given: str | None = None) -> str:
 
     Raises: MixindError when it is not a date.
     """
+    printed = datetime.date.today()
     epoch = os.environ.get(_SOURCE_DATE)
-    try:
-        if given is not None:
-            return datetime.date.fromisoformat(given).isoformat()
-        if epoch:
-            return datetime.datetime.fromtimestamp(int(epoch), datetime.UTC).date().isoformat()
-    except (ValueError, OverflowError, OSError):
-        raise MixindError(f"date: {given or epoch!r} is not a date. Write it as 2026-03-01.") from None
-    return datetime.date.today().isoformat()
-
-
-@dataclass
-class _Page:
-    """A page under construction: a matplotlib axes that spans it, one unit per millimetre."""
-
-    width: float
-    height: float
-    figure: Any = field(init=False)
-    axes: Any = field(init=False)
-
-    def __post_init__(self) -> None:
-        from matplotlib.figure import Figure
-
-        self.figure = Figure(figsize=(self.width * _MM, self.height * _MM), facecolor="white")
-        self.axes = self.figure.add_axes((0, 0, 1, 1))
-        self.axes.set_xlim(0, self.width)
-        self.axes.set_ylim(0, self.height)
-        self.axes.set_axis_off()
-
-    def text(self, x: float, y: float, text: str, size: float, room: float | None = None, **style: Any) -> None:
-        """Write a line; it is set smaller, and cut at the end if need be, to stay within `room` [mm]."""
-        text, size = _fitted(_printable(text), size, room, style.get("fontweight", "normal"))
-        style = {"color": _INK, "va": "center", **style}
-        self.axes.text(x, y, text, fontsize=size, parse_math=False, **style)
-
-    def paragraph(self, x: float, y: float, text: str, size: float, room: float) -> float:
-        """Write a text broken into lines within `room`; return the y below its last line."""
-        for line in _wrapped(_printable(text), size, room):
-            self.text(x, y, line, size, color=_FAINT)
-            y -= size * _POINT * 1.3
-        return y
-
-    def box(self, x: float, y: float, width: float, height: float, colour: str, edge: str = _RAIL) -> None:
-        """Draw a filled rectangle from its lower left corner."""
-        from matplotlib.patches import Rectangle
-
-        self.axes.add_patch(Rectangle((x, y), width, height, facecolor=colour, edgecolor=edge, linewidth=0.4))
-
-    def line(self, xs: tuple[float, ...], ys: tuple[float, ...], width: float = 0.6, colour: str = _RAIL) -> None:
-        """Draw a line through points."""
-        self.axes.plot(xs, ys, color=colour, linewidth=width, solid_capstyle="butt")
-
-
-@lru_cache(maxsize=1)
-def _glyphs() -> frozenset[int]:
-    from matplotlib import font_manager, ft2font
-
-    return frozenset(ft2font.FT2Font(font_manager.findfont("DejaVu Sans")).get_charmap())
-
-
-def _printable(text: str) -> str:
-    """Return the text with whitespace folded and "?" for what the page's font has no glyph for."""
-    return "".join(c if ord(c) in _glyphs() else "?" for c in " ".join(text.split()))
-
-
-@lru_cache(maxsize=4096)
-def _width(text: str, size: float, weight: str) -> float:
-    from matplotlib.font_manager import FontProperties
-    from matplotlib.textpath import text_to_path
-
-    font = FontProperties(family="DejaVu Sans", size=size, weight=weight)
-    return float(text_to_path.get_text_width_height_descent(text, font, ismath=False)[0]) * _POINT
-
-
-def _fitted(text: str, size: float, room: float | None, weight: str) -> tuple[str, float]:
-    if room is None or not text:
-        return text, size
-    wide = _width(text, size, weight)
-    if wide > room:
-        size = max(size * room / wide, _SMALLEST_SIZE)
-    while len(text) > 2 and _width(text, size, weight) > room:
-        text = text[:-2] + "…"
-    return text, size
-
-
-def _wrapped(text: str, size: float, room: float) -> list[str]:
-    lines, line = [], ""
-    for word in text.split():
-        longer = f"{line} {word}".strip()
-        if line and _width(longer, size, "normal") > room:
-            lines.append(line)
-            longer = word
-        line = longer
-    return [*lines, line]
+    if epoch:
+        try:
+            printed = datetime.datetime.fromtimestamp(int(epoch), datetime.UTC).date()
+        except (ValueError, OverflowError, OSError):
+            raise MixindError(f"{_SOURCE_DATE}: {epoch!r} is not a date in seconds since 1970.") from None
+    if given is not None:
+        try:
+            printed = datetime.date.fromisoformat(given)
+        except ValueError:
+            raise MixindError(f"date: {given!r} is not a date. Write it as 2026-03-01.") from None
+    return printed.isoformat()
 
 
 @dataclass(frozen=True)
@@ -208,23 +118,25 @@ def draw_chart(prediction: Prediction, paper: str = "a4", date: str | None = Non
     if paper not in PAPERS:
         raise MixindError(f"paper: {paper!r} is not one of {', '.join(PAPERS)}.")
     check_rungs(prediction.pH.size)
-    page, printed = _Page(*PAPERS[paper]), page_date(date)
+    printed = page_date(date)
     said = verdict or Verdict(prediction.worst(), METRICS["ciede2000"].threshold or 0.0, "at the exact dose")
-    _head(page, prediction)
-    _ladder(page, prediction, said.threshold)
-    _foot(page, prediction, printed, said)
+    with own_style():
+        page = Page(*PAPERS[paper])
+        _head(page, prediction)
+        _ladder(page, prediction, said.threshold)
+        _foot(page, prediction, printed, said)
     return page.figure
 
 
-def _head(page: _Page, prediction: Prediction) -> None:
+def _head(page: Page, prediction: Prediction) -> None:
     room, top = page.width - 2 * _MARGIN, page.height
     page.text(_MARGIN, top - 17, prediction.blend.title, 17, room, fontweight="bold")
     blend = prediction.blend
     page.text(_MARGIN, top - 25.5, f"Add {blend.dose} of sample: {blend.dose.in_drops()}.", 9.5, room)
-    page.text(_MARGIN, top - 31, prediction.conditions.describe(), 7, room, color=_FAINT)
+    page.text(_MARGIN, top - 31, prediction.conditions.describe(), 7, room, color=FAINT)
 
 
-def _ladder(page: _Page, prediction: Prediction, threshold: float) -> None:
+def _ladder(page: Page, prediction: Prediction, threshold: float) -> None:
     count, top = prediction.pH.size, page.height - 42.0
     pitch = (top - _LADDER_FOOT) / count
     height = pitch - min(4.0, 0.22 * pitch)
@@ -242,12 +154,12 @@ def _ladder(page: _Page, prediction: Prediction, threshold: float) -> None:
         twin_at += columns.twin_width + 2
 
 
-def _column_heads(page: _Page, columns: _Columns, prediction: Prediction, twins: list[str], y: float) -> None:
+def _column_heads(page: Page, columns: _Columns, prediction: Prediction, twins: list[str], y: float) -> None:
     for x, text in ((columns.pH, "pH"), (columns.swatch, _seen_by(prediction)), (columns.joint, "apart"),
                     (columns.words, "in words; L* a* b*; ± dE00; grade")):
-        page.text(x, y, text, 6.5, color=_FAINT)
+        page.text(x, y, text, 6.5, color=FAINT)
     for number, eyes in enumerate(twins):
-        page.text(columns.twin + number * (columns.twin_width + 2), y, f"{eyes} eye", 6.5, color=_FAINT)
+        page.text(columns.twin + number * (columns.twin_width + 2), y, f"{eyes} eye", 6.5, color=FAINT)
 
 
 def _seen_by(prediction: Prediction) -> str:
@@ -255,7 +167,7 @@ def _seen_by(prediction: Prediction) -> str:
     return "colour in the vessel" if eyes == "normal" else f"colour as a {eyes} eye is thought to see it"
 
 
-def _rung(page: _Page, columns: _Columns, row: dict[str, Any], y: float, height: float) -> None:
+def _rung(page: Page, columns: _Columns, row: dict[str, Any], y: float, height: float) -> None:
     middle = y + height / 2
     size = float(np.clip(height * 1.5, 6.5, 22))
     page.text(columns.pH, middle, pH_text(row["pH"]), size, columns.swatch - columns.pH - 4, fontweight="bold")
@@ -266,12 +178,12 @@ def _rung(page: _Page, columns: _Columns, row: dict[str, Any], y: float, height:
         numbers += f";  print off by {row['shown_dE00']:.1f}"
     if height > 7:
         page.text(columns.words, middle + 1.9, row["colour"], 10, columns.words_width, fontweight="bold")
-        page.text(columns.words, middle - 2.4, numbers, 7, columns.words_width, color=_FAINT)
+        page.text(columns.words, middle - 2.4, numbers, 7, columns.words_width, color=FAINT)
     else:
-        page.text(columns.words, middle, f"{row['colour']}   {numbers}", 6.5, columns.words_width)
+        page.text(columns.words, middle, f"{row['colour']}: {numbers}", 6.5, columns.words_width)
 
 
-def _joints(page: _Page, columns: _Columns, prediction: Prediction, limit: float, top: float, pitch: float) -> None:
+def _joints(page: Page, columns: _Columns, prediction: Prediction, limit: float, top: float, pitch: float) -> None:
     """Write between two rungs how far they look apart; the weakest is set off, and what looks alike is said to."""
     steps = np.diagonal(prediction.separation(), offset=1)
     weakest = int(steps.argmin())
@@ -280,14 +192,14 @@ def _joints(page: _Page, columns: _Columns, prediction: Prediction, limit: float
         weak = number == weakest
         page.line((columns.joint - 1, columns.joint + 1, columns.joint + 1, columns.joint - 1),
                   (y + pitch * 0.3, y + pitch * 0.3, y - pitch * 0.3, y - pitch * 0.3), 1.4 if weak else 0.6,
-                  _INK if weak else _RAIL)
+                  INK if weak else RAIL)
         page.text(columns.joint + 2.5, y, f"{value:.1f}", float(np.clip(pitch * 0.8, 6, 9)),
                   fontweight="bold" if weak else "normal")
         if (weak or value < limit) and pitch > 7:
-            page.text(columns.joint + 2.5, y - 3.4, "too close" if value < limit else "weakest", 5.5, color=_FAINT)
+            page.text(columns.joint + 2.5, y - 3.4, "too close" if value < limit else "weakest", 5.5, color=FAINT)
 
 
-def _twin(page: _Page, prediction: Prediction, eyes: str, x: float, width: float, top: float, pitch: float,
+def _twin(page: Page, prediction: Prediction, eyes: str, x: float, width: float, top: float, pitch: float,
           height: float) -> None:
     """Draw the same ladder as a colour-deficient eye is thought to see it."""
     seen = predict(prediction.blend, prediction.pH, replace(prediction.conditions, eyes=eyes, severity=1.0))
@@ -300,7 +212,7 @@ def _twin(page: _Page, prediction: Prediction, eyes: str, x: float, width: float
                   bbox={"facecolor": "white", "edgecolor": "none", "pad": 0.8})
 
 
-def _foot(page: _Page, prediction: Prediction, date: str, verdict: Verdict) -> None:
+def _foot(page: Page, prediction: Prediction, date: str, verdict: Verdict) -> None:
     y, middle = _LADDER_FOOT - 8.0, page.width / 2 + 6
     page.line((_MARGIN, page.width - _MARGIN), (y + 4, y + 4))
     _blend_table(page, prediction, _MARGIN, y, middle - _MARGIN - 6)
@@ -308,21 +220,25 @@ def _foot(page: _Page, prediction: Prediction, date: str, verdict: Verdict) -> N
     span = ",".join(pH_text(value) for value in prediction.pH) if prediction.pH.size <= 9 else "FROM:TO:STEP"
     about = (f"mixind {VERSION} · {date} · dye data {prediction.blend.digest()} · reprint at 100 % size: mixind chart BLEND "
              f"OUT.pdf --ph {span} --date {date} · look at it in daylight")
-    page.text(_MARGIN, 9, about, 6, page.width - 2 * _MARGIN, color=_FAINT)
+    page.text(_MARGIN, 9, about, 6, page.width - 2 * _MARGIN, color=FAINT)
 
 
-def _blend_table(page: _Page, prediction: Prediction, x: float, y: float, room: float) -> None:
+def _blend_table(page: Page, prediction: Prediction, x: float, y: float, room: float) -> None:
     page.text(x, y, "Stock solution", 8.5, fontweight="bold")
-    page.text(x + room - 20, y, "% w/v", 6.5, ha="right", color=_FAINT)
-    page.text(x + room, y, "mg/L", 6.5, ha="right", color=_FAINT)
+    page.text(x + room - 20, y, "% w/v", 6.5, ha="right", color=FAINT)
+    page.text(x + room, y, "mg/L", 6.5, ha="right", color=FAINT)
     components = prediction.blend.components
-    pitch = min(4.6, 32 / max(len(components), 1))
-    for component in components:
+    shown = components if len(components) <= _MOST_ROWS else components[:_MOST_ROWS - 1]
+    pitch = min(4.6, 30 / min(len(components), _MOST_ROWS))
+    for component in shown:
         y -= pitch
-        size = min(7.5, pitch / _POINT * 0.75)
+        size = min(7.5, pitch / POINT * 0.75)
         page.text(x, y, component.dye.name, size, room - 40)
         page.text(x + room - 20, y, significant(component.grams_per_litre / 10), size, ha="right")
         page.text(x + room, y, mg_per_litre(component), size, ha="right")
+    if len(shown) < len(components):
+        y -= pitch
+        page.text(x, y, f"and {len(components) - len(shown)} more: see the blend file", pitch / POINT * 0.75, room)
     hazards = "; ".join(f"{c.dye.name} {', '.join(h.code for h in c.dye.hazards) or 'not assessed'}" for c in components)
     y = page.paragraph(x, y - 6, f"Hazards of the pure dyes: {hazards}.", 6.5, room)
     kept = ("Keep the stock closed, cool and dark; hang the chart out of the sun. Wear gloves, no flame near ethanolic stocks. "
@@ -330,7 +246,7 @@ def _blend_table(page: _Page, prediction: Prediction, x: float, y: float, room: 
     page.paragraph(x, y - 1.2, kept, 6.5, room)
 
 
-def _reading(page: _Page, prediction: Prediction, verdict: Verdict, x: float, y: float, room: float) -> None:
+def _reading(page: Page, prediction: Prediction, verdict: Verdict, x: float, y: float, room: float) -> None:
     page.text(x, y, "How to read it", 8.5, fontweight="bold")
     worst = verdict.worst
     limits = f"told apart side by side from {verdict.threshold:g}, against this print from {PRINTED_CHART_THRESHOLD:g}"
@@ -349,7 +265,8 @@ def _reading(page: _Page, prediction: Prediction, verdict: Verdict, x: float, y:
 
 def _gamut_note(prediction: Prediction) -> str:
     outside = int((~prediction.patch.in_gamut).sum())
-    return f" {outside} of the colours lie outside sRGB and are printed with less chroma." if outside else ""
+    lie = "colour lies" if outside == 1 else "colours lie"
+    return f" {outside} {lie} outside sRGB, printed with less chroma." if outside else ""
 
 
 def write_chart(path: str | Path, prediction: Prediction, replace_file: bool = False, date: str | None = None,
@@ -361,29 +278,3 @@ def write_chart(path: str | Path, prediction: Prediction, replace_file: bool = F
     """
     suffix, path = check_suffix(path), check_target(path, replace_file)
     write_whole(path, rendered(draw_chart(prediction, paper, date, verdict), suffix), replace_file)
-
-
-def rendered(figure: Any, suffix: str) -> bytes:
-    """Return a figure as the bytes of a file with this suffix, one of `SUFFIXES`."""
-    import matplotlib
-
-    metadata: Any = {
-        ".pdf": {"CreationDate": None, "ModDate": None, "Producer": None, "Creator": "mixind"},
-        ".svg": {"Date": None, "Creator": "mixind"}, ".png": {"Software": None}}[suffix]
-    style: Any = {"pdf.fonttype": 42, "svg.hashsalt": "mixind", "svg.fonttype": "path", "font.family": "DejaVu Sans"}
-    buffer = io.BytesIO()
-    with matplotlib.rc_context(style):
-        figure.savefig(buffer, format=suffix[1:], dpi=_DPI, metadata=metadata)
-    return _with_profile(buffer.getvalue()) if suffix == ".png" else buffer.getvalue()
-
-
-def _with_profile(png: bytes) -> bytes:
-    """Return the PNG with an sRGB profile in it, whose clock is set to zero so that the bytes do not depend on it."""
-    from PIL import Image, ImageCms
-
-    profile = bytearray(ImageCms.ImageCmsProfile(ImageCms.createProfile("sRGB")).tobytes())
-    profile[24:36] = bytes(12)
-    buffer = io.BytesIO()
-    with Image.open(io.BytesIO(png)) as image:
-        image.convert("RGB").save(buffer, format="PNG", icc_profile=bytes(profile), dpi=(_DPI, _DPI))
-    return buffer.getvalue()

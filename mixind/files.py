@@ -24,6 +24,8 @@ def read_bytes(path: str | Path, limit: int = TOML_LIMIT) -> bytes:
     """
     try:
         if str(path) == "-":
+            if sys.stdin is None:
+                raise MixindError("standard input is closed. Name a file instead of -.")
             raw = sys.stdin.buffer.read(limit + 1)
         else:
             with open(path, "rb") as stream:
@@ -84,8 +86,11 @@ class Table:
     def text(self, key: str, default: Any = _MISSING) -> Any:
         """Return a string that is not blank."""
         value = self._take(key, str, default, "text in quotes")
-        if isinstance(value, str) and key in self._data and not value.strip():
-            self.fault(key, "is blank.")
+        if isinstance(value, str) and key in self._data:
+            if not value.strip():
+                self.fault(key, "is blank.")
+            elif not value.isprintable():
+                self.fault(key, "holds a line break or another control character.")
         return value
 
     def flag(self, key: str) -> bool:
@@ -97,7 +102,8 @@ class Table:
         value = self.text(key, default)
         known = list(known)
         if isinstance(value, str) and value not in known:
-            self.fault(key, f"{value!r} is not one of {', '.join(known)}{nearest(value, known)}")
+            self.fault(key, f"{_shown(value)} is not one of {', '.join(known)}{nearest(value, known)}")
+            return None
         return value
 
     def number(self, key: str, low: float, high: float, default: Any = _MISSING) -> Any:
@@ -167,7 +173,9 @@ class Table:
 
 
 def _shown(value: object) -> str:
-    text = repr(value)
+    if isinstance(value, dict | list):
+        return "a table" if isinstance(value, dict) else "a list"
+    text = repr(value) if not isinstance(value, int) or abs(value) < 10**40 else "a very large number"
     return text if len(text) <= 40 else text[:37] + "..."
 
 
@@ -176,14 +184,24 @@ def check_target(path: str | Path, replace: bool) -> Path:
 
     Raises: MixindError when its folder is missing, or when it exists and `replace` is false.
     """
+    if not str(path):
+        raise MixindError("the name of a file to write is blank. Name a file.")
     path = Path(path)
-    if not path.parent.is_dir():
+    if not os.path.isdir(path.parent):
         raise MixindError(f"{path}: the folder {path.parent} does not exist. Make it first.")
-    if path.is_dir():
+    if len(os.fsencode(path.name)) > _LONGEST_NAME:
+        raise MixindError(f"{path.name[:40]}..: is too long a name for a file. Use at most {_LONGEST_NAME} bytes.")
+    if os.path.isdir(path):
         raise MixindError(f"{path}: is a folder. Name a file.")
-    if path.exists() and not replace:
-        raise MixindError(f"{path}: exists already. Choose another name or give --replace.")
+    if os.path.lexists(path):
+        if not replace:
+            raise MixindError(f"{path}: exists already. Choose another name or give --replace.")
+        if not os.path.isfile(path):
+            raise MixindError(f"{path}: is not a file that can be replaced. Choose another name.")
     return path
+
+
+_LONGEST_NAME = 200
 
 
 def write_whole(path: str | Path, content: bytes, replace: bool) -> None:
@@ -193,7 +211,8 @@ def write_whole(path: str | Path, content: bytes, replace: bool) -> None:
     """
     import tempfile  # only writing needs it
 
-    path = check_target(path, replace)
+    # a link is followed, so that the file it points to is replaced and not the link
+    path = Path(os.path.realpath(check_target(path, replace)))
     temporary = None
     try:
         handle, temporary = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.", suffix=".part")

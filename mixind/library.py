@@ -36,14 +36,18 @@ class Library:
         from_variable = os.environ.get(LIBRARY_VARIABLE)
         added = [Path(folder) for folder in ([from_variable] if from_variable else []) + list(folders)]
         for folder in added:
-            if not folder.is_dir():
+            if not os.path.isdir(folder):
                 raise MixindError(f"{folder}: is not a folder of dye files.")
-        self._paths = {path.stem: path for folder in (bundled_folder(), *added) for path in sorted(folder.glob("*.toml"))}
+        paths = [path for folder in (bundled_folder(), *added) for path in sorted(folder.glob("*.toml"))]
+        self._paths = {_folded(path.stem): path for path in paths}
         self._read: dict[str, Dye] = {}
 
     def _dye(self, stem: str) -> Dye:
         if stem not in self._read:
-            self._read[stem] = read_dye(self._paths[stem])
+            dye = read_dye(self._paths[stem])
+            if _folded(dye.name) != stem:
+                raise MixindError(f"{self._paths[stem]}: holds {dye.name}. Name the file {_folded(dye.name)}.toml.")
+            self._read[stem] = dye
         return self._read[stem]
 
     def all(self) -> list[Dye]:

@@ -18,6 +18,14 @@ PH_RANGE = (-1.0, 15.0)
 SMALLEST_PH_STEP = 0.05
 _STEP_SLACK = 1e-3
 
+# Bounds beyond which a figure is a slip of the pen, not a quantity of a bench.
+STRONGEST = (1000.0, 10.0)
+"""Largest strength by mass [g/L] and by amount [mol/L]."""
+VOLUMES = (1e-4, 1e5)
+"""Range of the volumes of a dose [mL]."""
+PATHS = (0.01, 100.0)
+"""Range of an optical path [cm]."""
+
 # Factor from each written unit to the unit used inside.
 LENGTH = {"cm": 1.0, "mm": 0.1, "m": 100.0}
 VOLUME = {"mL": 1.0, "ml": 1.0, "L": 1e3, "l": 1e3, "uL": 1e-3, "ul": 1e-3}
@@ -95,7 +103,11 @@ def strength(text: str) -> Strength:
     value, unit = _split(text, units, "strength")
     if value < 0:
         raise MixindError(f"strength: {text!r} is negative. Give zero or more.")
-    return Strength(value * units[unit], unit in MASS_STRENGTH)
+    by_mass = unit in MASS_STRENGTH
+    most = STRONGEST[0] if by_mass else STRONGEST[1]
+    if value * units[unit] > most:
+        raise MixindError(f"strength: {text!r} is more than {most:g} {'g/L' if by_mass else 'mol/L'}. Check the unit.")
+    return Strength(value * units[unit], by_mass)
 
 
 @dataclass(frozen=True)
@@ -103,16 +115,17 @@ class Dose:
     """How much stock goes into how much sample.
 
     Attributes:
-        stock: volume of indicator stock, above zero [mL].
-        sample: volume of the sample it is added to, above zero [mL].
+        stock: volume of indicator stock, 0.0001 to 100 000 [mL].
+        sample: volume of the sample it is added to, the same range [mL].
     """
 
     stock: float
     sample: float
 
     def __post_init__(self) -> None:
-        if not (0 < self.stock < math.inf and 0 < self.sample < math.inf):
-            raise MixindError(f"dose: got {self.stock} mL in {self.sample} mL. Both volumes must be above zero.")
+        for volume in (self.stock, self.sample):
+            if not VOLUMES[0] <= volume <= VOLUMES[1]:
+                raise MixindError(f"dose: {volume:g} mL is outside {VOLUMES[0]:g} to {VOLUMES[1]:g} mL.")
 
     def share(self, factor: float = 1.0) -> float:
         """Return the share of stock in the coloured sample when `factor` times the dose is given [1]."""
@@ -124,7 +137,7 @@ class Dose:
     def in_drops(self) -> str:
         """Return the dose in drops of a watery and of an alcoholic stock, for the reader at the bench."""
         water, alcohol = (max(1, round(self.stock / drop)) for drop in (WATER_DROP, ALCOHOL_DROP))
-        return f"about {water} drops of a watery or {alcohol} of an alcoholic stock"
+        return f"about {water} drop{'s' if water > 1 else ''} of a watery or {alcohol} of an alcoholic stock"
 
 
 def dose(text: str) -> Dose:
@@ -156,10 +169,24 @@ def share(text: str, what: str) -> float:
 
 
 def path_length(text: str) -> float:
-    """Return an optical path [cm] above zero and at most 1 m from "1 cm" or "16 mm"."""
+    """Return an optical path [cm], 0.01 to 100, from "1 cm" or "16 mm".
+
+    Raises: MixindError outside the range or without a unit.
+    """
     value = quantity(text, LENGTH, "path")
-    if not 0 < value <= 100:
-        raise MixindError(f"path: {text!r} is outside 0 to 100 cm. Give the width of the vessel.")
+    if not PATHS[0] <= value <= PATHS[1]:
+        raise MixindError(f"path: {text!r} is outside {PATHS[0]:g} to {PATHS[1]:g} cm. Give the width of the vessel.")
+    return value
+
+
+def content(text: str) -> float:
+    """Return the share of dye in a powder, above 0 to 1, from "85 %" or "0.85".
+
+    Raises: MixindError outside the range.
+    """
+    value = quantity(text, SHARE, "content")
+    if not 0 < value <= 1:
+        raise MixindError(f"content: {text!r} is outside above 0 to 100 %.")
     return value
 
 
@@ -211,12 +238,14 @@ def pH_series(text: str) -> np.ndarray:
         array([6.8, 7.2])
     """
     try:
+        if "_" in text:
+            raise ValueError
         if ":" in text:
             numbers = [float(part) for part in text.split(":")]
             if len(numbers) not in (2, 3):
                 raise ValueError
             return pH_grid(numbers[0], numbers[1], numbers[2] if len(numbers) == 3 else 1.0)
-        values = np.array([float(part) for part in text.split(",")])
+        values = np.array([float(part) for part in text.split(",")]) + 0.0
     except MixindError:
         raise
     except ValueError:

@@ -21,12 +21,12 @@ PACKAGE = ROOT / "mixind"
 # From the ground to the roof: a module imports only from lines above its own.
 STOREYS = (
     ("errors", "version"), ("quantities",), ("files",), ("spectra",), ("equilibria",), ("dyes",), ("dye_files",), ("library",),
-    ("colorimetry", "colour_words"), ("difference",), ("display", "viewing"), ("conditions",), ("blend",), ("separation",), ("prediction",),
+    ("colorimetry", "colour_words"), ("difference",), ("display", "viewing"), ("conditions",), ("blend",), ("separation", "paper"), ("prediction",),
     ("solvers",), ("search.problem",), ("search.candidates",), ("search.local",), ("search.rounding",), ("search.subsets",),
     ("search.formulate",), ("figures",), ("cli.printing", "cli.options"),
     ("cli.formulate", "cli.predict", "cli.chart", "cli.dye"))
 FLOOR = {name: floor for floor, names in enumerate(STOREYS) for name in names}
-DOORS = {"colour": {"viewing"}, "matplotlib": {"figures"}, "PIL": {"figures"}, "scipy": {"solvers", "spectra"}}
+DOORS = {"colour": {"viewing"}, "matplotlib": {"paper"}, "PIL": {"paper"}, "scipy": {"solvers", "spectra"}}
 
 
 def modules() -> list[Path]:

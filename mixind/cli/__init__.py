@@ -13,6 +13,8 @@ from typing import Any, NoReturn
 # One thread for the linear algebra of small arrays: faster, and the same last digits on every machine of a kind.
 for _variable in ("OMP_NUM_THREADS", "OPENBLAS_NUM_THREADS", "MKL_NUM_THREADS"):
     os.environ.setdefault(_variable, "1")
+# Charts are drawn into files; what the user shows figures with elsewhere does not matter here.
+os.environ["MPLBACKEND"] = "agg"
 
 import click  # noqa: E402 - the environment has to be set first
 
@@ -47,7 +49,8 @@ class LazyGroup(click.Group):
         """Run a command; when nobody reads its output on, stop quietly."""
         try:
             result = super().invoke(ctx)
-            sys.stdout.flush()
+            if sys.stdout is not None:
+                sys.stdout.flush()
             return result
         except BrokenPipeError:
             # keep the interpreter from flushing into the closed pipe once more
@@ -60,9 +63,18 @@ class LazyGroup(click.Group):
         try:
             result = super().main(*args, **kwargs)
             sys.exit(result if isinstance(result, int) else 0)
+        except SystemExit as leaving:
+            # click answers a closed pipe with 1, having wrapped stdout so that nothing more is flushed into it
+            closed = type(sys.stdout).__name__ == "PacifyFlushWrapper"
+            sys.exit(0 if closed else leaving.code)
+        except OSError as error:
+            _complain(f"the output cannot be written: {error.strerror}.", 2)
         except MixindError as error:
             _complain(str(error), 1 if isinstance(error, NoAnswer) else 2)
         except click.ClickException as error:
+            if type(error).__name__ == "NoArgsIsHelpError":  # of newer versions of click; its message is the help
+                click.echo(error.format_message(), err=True)
+                sys.exit(2)
             path = error.ctx.command_path if isinstance(error, click.UsageError) and error.ctx else "mixind"
             _complain(f"{path}: {error.format_message()}", 2)
         except (click.Abort, KeyboardInterrupt):

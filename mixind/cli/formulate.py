@@ -3,8 +3,8 @@
 from __future__ import annotations
 
 import dataclasses
+import os
 from itertools import product
-from pathlib import Path
 from typing import Any
 
 import click
@@ -33,6 +33,8 @@ from mixind.search.problem import Task
 from mixind.search.subsets import PLANS
 from mixind.version import VERSION
 from mixind.viewing import EYES, OBSERVERS
+
+_MANY_RUNGS = 60
 
 
 @click.command()
@@ -97,14 +99,17 @@ def command(as_json: bool, replace: bool, save: str | None, chart: str | None, d
 
 def _check_targets(save: str | None, chart: str | None, replace: bool, date: str | None, task: Task) -> None:
     """Refuse now what could only be refused after the search, so that nothing is written by halves."""
-    if chart:
+    page_date(date)
+    if chart is not None:
         check_suffix(chart)
         check_rungs(task.pH.size)
-        page_date(date)
-    if save and chart and Path(save).resolve() == Path(chart).resolve():
+    if save and chart and os.path.realpath(save) == os.path.realpath(chart):
         raise MixindError(f"--save and --chart both name {save}. Choose two files.")
-    for target in filter(None, (save, chart)):
-        check_target(target, replace)
+    for target in (save, chart):
+        if target is not None:
+            check_target(target, replace)
+    if task.pH.size > _MANY_RUNGS:
+        printing.remark(f"{task.pH.size} pH to tell apart: this takes minutes")
 
 
 def _verdict(found: Formulation) -> Verdict | None:
@@ -117,6 +122,8 @@ def _verdict(found: Formulation) -> Verdict | None:
 
 def _choice(given: dict[str, Any]) -> Choice:
     only = [name.strip() for name in (given["dyes"] or "").split(",") if name.strip()]
+    if given["dyes"] is not None and not only:
+        raise MixindError("--dyes names no dye. Write for instance --dyes 'methyl red,BTB'.")
     return choose(Library(given["libraries"]), only, given["with_"], given["without"], given["most_dyes"],
                   given["allow_ion_pairs"])
 
@@ -124,8 +131,8 @@ def _choice(given: dict[str, Any]) -> Choice:
 def _task(given: dict[str, Any]) -> tuple[list[Conditions], Task]:
     """Return the conditions, one per viewer, and the task."""
     pH = quantities.pH_grid(given["low"], given["high"], given["step"])
-    if not 0 < given["peak_absorbance"] <= 10:
-        raise MixindError(f"--peak-absorbance {given['peak_absorbance']:g} is outside 0 to 10.")
+    if not 0.05 <= given["peak_absorbance"] <= 10:
+        raise MixindError(f"--peak-absorbance {given['peak_absorbance']:g} is outside 0.05 to 10.")
     if not 0 <= given["darkest"] <= 90:
         raise MixindError(f"--darkest {given['darkest']:g} is outside 0 to 90.")
     shared = {key: value for key, value in given.items() if key not in ("light", "eyes")}

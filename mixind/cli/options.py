@@ -107,5 +107,5 @@ def chosen_threshold(metric: str, threshold: float | None) -> float:
     if value is None:
         raise MixindError(f"--metric {metric} has no threshold of its own. Give --threshold.")
     if not 0 < value < float("inf"):
-        raise MixindError(f"--threshold {value} is not above zero.")
+        raise MixindError(f"--threshold {value} is not a finite number above zero.")
     return value

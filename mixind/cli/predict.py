@@ -26,7 +26,7 @@ def command(blend: str, span: str | None, metric: str, threshold: float | None, 
 
     Example: mixind predict examples/drip_line.toml --ph 4.5:7.5:0.5
     """
-    limit = options.chosen_threshold(metric, threshold)
+    limit = options.chosen_threshold(metric, threshold) if threshold is not None else METRICS[metric].threshold
     read, conditions, remarks = options.blend_and_conditions(blend, libraries, given)
     pH = options.given_span(span, read)
     found = predict(read, pH, conditions)

@@ -48,7 +48,7 @@ def as_json(facts: dict[str, Any]) -> None:
 def colour_terminal() -> bool:
     """Return whether stdout is a terminal that shows 24-bit colours and may be used so (NO_COLOR is obeyed)."""
     truecolour = os.environ.get("COLORTERM", "") in ("truecolor", "24bit")
-    return sys.stdout.isatty() and truecolour and not os.environ.get("NO_COLOR")
+    return sys.stdout is not None and sys.stdout.isatty() and truecolour and not os.environ.get("NO_COLOR")
 
 
 def swatch(hex_colour: str, width: int = 6) -> str:
@@ -113,13 +113,15 @@ def _table_with_swatches(rows: list[list[str]]) -> None:
         result("  " + block + "  ".join(cell.ljust(w) for cell, w in zip(row, widths, strict=True)).rstrip())
 
 
-def print_separation(separation: float, pair: tuple[float, float], threshold: float, metric: str, kL: float) -> None:
+def print_separation(separation: float, pair: tuple[float, float], threshold: float | None, metric: str, kL: float) -> None:
     """Print the weakest step and what that means side by side and against a printed chart."""
     weight = f", kL {kL:g}" if metric == "ciede2000" else ""
     result(f"Worst pair: pH {pH_text(pair[0])} and {pH_text(pair[1])}, separation {separation:.1f} ({metric.upper()}{weight})")
+    limits = [("side by side", threshold)] if threshold is not None else []
     if metric == "ciede2000":
-        readings = [f"{'told apart' if separation >= limit else 'NOT told apart'} {how} (from {limit:g})"
-                    for how, limit in (("side by side", threshold), ("against a printed chart", PRINTED_CHART_THRESHOLD))]
+        limits.append(("against a printed chart", PRINTED_CHART_THRESHOLD))
+    readings = [f"{'told apart' if separation >= limit else 'NOT told apart'} {how} (from {limit:g})" for how, limit in limits]
+    if readings:
         result(f"  {'; '.join(readings)}")
 
 

@@ -10,6 +10,8 @@ from mixind.dyes import Dye
 from mixind.errors import MixindError
 from mixind.library import Library
 
+_MOST_KINDS = 10
+
 
 @dataclass(frozen=True)
 class Choice:
@@ -34,16 +36,28 @@ class Choice:
         return self.ion_pairs or not any(conflict(self.dyes[a], self.dyes[b]) for a, b in combinations(positions, 2))
 
     def families(self) -> list[tuple[int, ...]]:
-        """Return the largest sets of candidates that go together, each with all required dyes."""
-        cations = [i for i, dye in enumerate(self.dyes) if dye.ion == "cation"]
-        found: list[tuple[int, ...]] = []
-        for size in range(len(cations) + 1):
-            for chosen in combinations(cations, size):
-                rest = [i for i in range(len(self.dyes)) if i not in cations and self.compatible((*chosen, i))]
-                family = tuple(sorted((*chosen, *rest)))
-                if set(self.required) <= set(family):
-                    found.append(family)
-        return [f for f in found if not any(set(f) < set(other) for other in found)]
+        """Return the largest sets of candidates that go together, each with all required dyes.
+
+        Raises: MixindError when the candidates clash in so many ways that the sets cannot be listed.
+        """
+        every = frozenset(range(len(self.dyes)))
+        if self.ion_pairs:
+            return [tuple(sorted(every))]
+        clashes = {i: frozenset(j for j in every if conflict(self.dyes[i], self.dyes[j]))
+                   for i, dye in enumerate(self.dyes) if dye.ion == "cation"}
+        kinds = sorted(set(clashes.values()), key=sorted)
+        if len(kinds) > _MOST_KINDS:
+            raise MixindError(f"the cationic dyes clash with the others in {len(kinds)} ways, too many to go through. "
+                              "Leave some out or allow ion pairs.")
+        found = set()
+        for size in range(len(kinds) + 1):
+            for chosen in combinations(kinds, size):
+                shut_out = frozenset().union(*chosen)
+                cations = frozenset(i for i, clash in clashes.items() if clash <= shut_out)
+                family = cations | (every - shut_out - frozenset(clashes))
+                if family >= set(self.required):
+                    found.add(tuple(sorted(family)))
+        return sorted(found)
 
 
 def conflict(one: Dye, other: Dye) -> bool:
