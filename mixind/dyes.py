@@ -14,6 +14,9 @@ from mixind.equilibria import Solution
 GRADES = ("A", "B", "C")
 """A: independent sources agree; B: one source, or several that disagree for a known reason; C: memory or analogy."""
 
+NOT_CLASSIFIED = "not classified"
+"""Code of a hazard row that says that a supplier lists no hazard."""
+
 IONS = ("anion", "zwitterion", "neutral", "cation")
 SALTS = ("free acid", "free base", "sodium salt", "calcium salt", "ammonium salt", "hydrochloride", "chloride", "oxalate")
 
@@ -254,6 +257,15 @@ class Dye:
         """The worst grade among the forms that are coloured; among all forms when none is."""
         coloured = [form.grade for form in self.forms if form.coloured]
         return max(coloured or [form.grade for form in self.forms])
+
+    @property
+    def hazard_text(self) -> str:
+        """The H-statements in one line; "not assessed" when there are none, which never means safe."""
+        codes = [hazard.code for hazard in self.hazards]
+        classified = [code for code in codes if code != NOT_CLASSIFIED]
+        if classified and len(classified) < len(codes):
+            return f"{', '.join(classified)} (not by all suppliers)"
+        return ", ".join(codes) or "not assessed"
 
     @property
     def largest_concentration(self) -> float:

@@ -239,7 +239,7 @@ def _blend_table(page: Page, prediction: Prediction, x: float, y: float, room: f
     if len(shown) < len(components):
         y -= pitch
         page.text(x, y, f"and {len(components) - len(shown)} more: see the blend file", pitch / POINT * 0.75, room)
-    hazards = "; ".join(f"{c.dye.name} {', '.join(h.code for h in c.dye.hazards) or 'not assessed'}" for c in components)
+    hazards = "; ".join(f"{c.dye.name} {c.dye.hazard_text}" for c in components)
     y = page.paragraph(x, y - 6, f"Hazards of the pure dyes: {hazards}.", 6.5, room)
     kept = ("Keep the stock closed, cool and dark; hang the chart out of the sun. Wear gloves, no flame near ethanolic stocks. "
             "The safety data sheet, local codes and licensed practice decide.")

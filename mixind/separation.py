@@ -8,6 +8,9 @@ import numpy as np
 
 from mixind.difference import Metric
 
+_AT_ONCE = 4096
+"""Pairs compared at once, so that they stay in the cache."""
+
 
 def step_pairs(pH: np.ndarray, step: float) -> np.ndarray:
     """Return the index pairs (i, j), i < j, of all pH at least one step apart, (K, 2)."""
@@ -34,7 +37,13 @@ def separations(coordinates: np.ndarray, pairs: np.ndarray, metric: Metric, kL: 
         pairs: indices into N, (K, 2).
     Returns: (..., K).
     """
-    return metric.difference(coordinates[..., pairs[:, 0], :], coordinates[..., pairs[:, 1], :], kL)
+    flat = coordinates.reshape(-1, *coordinates.shape[-2:])
+    values = np.empty((flat.shape[0], len(pairs)))
+    together = max(1, _AT_ONCE // max(len(pairs), 1))
+    for start in range(0, flat.shape[0], together):
+        part = flat[start:start + together]
+        values[start:start + together] = metric.difference(part[:, pairs[:, 0]], part[:, pairs[:, 1]], kL)
+    return values.reshape(*coordinates.shape[:-2], len(pairs))
 
 
 def separation_matrix(coordinates: np.ndarray, metric: Metric, kL: float) -> np.ndarray:

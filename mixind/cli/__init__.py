@@ -65,7 +65,7 @@ class LazyGroup(click.Group):
             sys.exit(result if isinstance(result, int) else 0)
         except SystemExit as leaving:
             # click answers a closed pipe with 1, having wrapped stdout so that nothing more is flushed into it
-            closed = type(sys.stdout).__name__ == "PacifyFlushWrapper"
+            closed = type(sys.stdout).__name__.endswith("PacifyFlushWrapper")
             sys.exit(0 if closed else leaving.code)
         except OSError as error:
             _complain(f"the output cannot be written: {error.strerror}.", 2)

@@ -38,15 +38,14 @@ def list_(libraries: tuple[str, ...], as_json: bool) -> None:
     rows = [["dye", "pKa (I = 0.1)", "interval", "colours", "ion", "grade", "hazards"]]
     rows += [_listed(dye) for dye in dyes]
     printing.table(rows, indent="")
-    printing.remark("hazards: '-' means not assessed here, never safe; the safety data sheet decides")
+    printing.remark("not assessed never means safe; the safety data sheet decides")
 
 
 def _listed(dye: Dye) -> list[str]:
     constants = ", ".join(f"{step.working_pka(Solution()):.2f}" for step in dye.steps) or "none"
     intervals = "; ".join(f"{i.low:g}-{i.high:g}" for i in dye.intervals) or "none"
     colours = "; ".join("/".join(i.colours) for i in dye.intervals) or "always the same"
-    hazards = ", ".join(hazard.code for hazard in dye.hazards) or "-"
-    return [dye.name, f"({constants})", f"({intervals})", colours, dye.ion, dye.grade, hazards]
+    return [dye.name, f"({constants})", f"({intervals})", colours, dye.ion, dye.grade, dye.hazard_text]
 
 
 def facts(dye: Dye) -> dict[str, Any]:

@@ -185,6 +185,6 @@ def print_dissolving(blend: Blend) -> None:
 def print_hazards(blend: Blend) -> None:
     """Print the hazards of the dyes, and who decides."""
     for dye in blend.dyes:
-        codes = ", ".join(hazard.code for hazard in dye.hazards) or "not assessed here, which does not mean safe"
-        result(f"  hazards of {dye.name}: {codes}")
+        warning = "" if dye.hazards else ", which does not mean safe"
+        result(f"  hazards of {dye.name}: {dye.hazard_text}{warning}")
     result("  the safety data sheet, local codes and licensed practice decide; ethanol is flammable, alkali is caustic")
