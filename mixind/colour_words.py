@@ -10,8 +10,8 @@ HUES = ((20, "crimson"), (44, "red"), (58, "orange-red"), (72, "orange"), (86, "
         (130, "yellow-green"), (172, "green"), (220, "blue-green"), (280, "blue"), (300, "indigo"), (328, "violet"),
         (346, "purple"), (360, "crimson"))
 
-# What a light purple, crimson or pale red is called.
-PINK_HUES, PINK_LIGHTNESS = ("purple", "crimson"), 65.0
+# A light purple or crimson is called pink, and so is a pale red up to this hue angle; beyond it, it leans to orange.
+PINK_HUES, PINK_LIGHTNESS, PALE_PINK_UP_TO = ("purple", "crimson"), 65.0, 30.0
 
 # Position of each hue word on the way through the rainbow, for saying how many steps two words lie apart: the seven
 # words that printed tables use (red, orange, yellow, green, blue, indigo, violet) stand one step apart.
@@ -55,9 +55,10 @@ def colour_word(Lab: np.ndarray) -> str:
         return "nearly black"
     if chroma < GREY_CHROMA:
         return "pale grey" if L > PALE_LIGHTNESS else "dark grey" if L < DARK_LIGHTNESS else "grey"
-    word = hue_word(np.degrees(np.arctan2(b, a)))
+    hue = float(np.degrees(np.arctan2(b, a)))
+    word = hue_word(hue)
     adjective = _strength(L, chroma)
-    pink = (word in PINK_HUES and L >= PINK_LIGHTNESS) or (word == "red" and adjective == "pale ")
+    pink = (word in PINK_HUES and L >= PINK_LIGHTNESS) or (word == "red" and adjective == "pale " and hue < PALE_PINK_UP_TO)
     return f"{adjective}{'pink' if pink else word}"
 
 

@@ -26,7 +26,7 @@ def test_named_css_colours_get_a_word_within_half_a_step(shown: str, hue: str) -
 @pytest.mark.parametrize(("Lab", "word"), [
     ((100, 0, 0), "colourless"), ((5, 3, 3), "nearly black"), ((50, 2, 2), "grey"), ((20, 1, 1), "dark grey"),
     ((80, 3, 3), "pale grey"), ((92, -3, 20), "pale yellow"), ((30, 40, 30), "dark red"), ((60, 8, 8), "greyish orange-red"),
-    ((50, 60, 35), "deep red"), ((77, 55, -30), "pink"), ((90, 12, 3), "pale pink"), ((80, 20, 12), "pale pink")])
+    ((50, 60, 35), "deep red"), ((77, 55, -30), "pink"), ((90, 12, 3), "pale pink"), ((80, 20, 8), "pale pink"), ((85, 19, 18), "pale red")])
 def test_lightness_and_chroma_make_the_adjective(Lab: tuple[float, float, float], word: str) -> None:
     assert colour_word(np.array(Lab, dtype=float)) == word
 
