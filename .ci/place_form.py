@@ -5,9 +5,9 @@
     python .ci/place_form.py triaryl_blue 638 116500 --also 412 17500 3200
     python .ci/place_form.py guess_4000 507 45000 --fwhm 4200
 
-SHAPE is a table of band_shapes.toml. --at: published absorptivity at another wavelength as a share of the maximum; on
-the red side, and where the shape alone gives more, the skew of the widest band is adjusted; else a weak blue band is
-added. --also: a second band (wavelength, absorptivity, width in cm-1), such as the blue band of a green dye.
+SHAPE is a table of band_shapes.toml. --at: published absorptivity at another wavelength as a share of the maximum; where
+the shape alone gives more, the skew of the widest band is adjusted; else a weak band is added, at that wavelength on the
+red side of the maximum, at 382 nm on its blue side. --also: a second band (wavelength, absorptivity, width in cm-1), such as the blue band of a green dye.
 """
 
 from __future__ import annotations
@@ -52,11 +52,13 @@ def with_ratio(bands: tuple[Band, ...], peak: float, height: float, extra: tuple
     def skewed(factor: float) -> tuple[Band, ...]:
         return placed(tuple(replace(b, skew=b.skew * factor) if b.fwhm == widest else b for b in bands), peak, height, extra)
 
+    weak = WEAK_BAND if wavelength < peak else replace(WEAK_BAND, wavenumber=CM1_PER_NM / wavelength)
+
     def weakly(part: float) -> tuple[Band, ...]:
-        return placed(bands, peak, height, (*extra, replace(WEAK_BAND, height=part * height)))
+        return placed(bands, peak, height, (*extra, replace(weak, height=part * height)))
 
     too_much = share_at(skewed(1.0), wavelength, height) > share
-    change, low, high = (skewed, 0.5, 1.6) if wavelength > peak or too_much else (weakly, 0.0, 2.0)
+    change, low, high = (skewed, 0.5, 1.6) if too_much else (weakly, 0.0, 2.0)
     return change(brentq(lambda x: share_at(change(x), wavelength, height) - share, low, high, xtol=1e-7))
 
 
