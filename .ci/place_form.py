@@ -7,7 +7,8 @@
 
 SHAPE is a table of band_shapes.toml. --at: published absorptivity at another wavelength as a share of the maximum; where
 the shape alone gives more, the skew of the widest band is adjusted; else a weak band is added, at that wavelength on the
-red side of the maximum, at 382 nm on its blue side. --also: a second band (wavelength, absorptivity, width in cm-1), such as the blue band of a green dye.
+red side of the maximum, at 382 nm on its blue side. --also: a second band (wavelength, absorptivity, width in cm-1),
+such as the blue band of a green dye.
 """
 
 from __future__ import annotations

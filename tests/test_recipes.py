@@ -48,7 +48,7 @@ def found_and_best(library: Library, low: float, high: float, most: int, toleran
     return found.worst.separation, max(best_dose(recipe(name, library), asked)[0] for name in RECIPES)
 
 
-@pytest.mark.parametrize(("span", "ratio"), zip(SPANS, (1.2, 1.3, 1.6), strict=True))
+@pytest.mark.parametrize(("span", "ratio"), list(zip(SPANS, (1.2, 1.3, 1.6), strict=True)))
 def test_blends_beat_the_published_recipes(library: Library, span: tuple[int, int, int], ratio: float) -> None:
     """At the exact dose, under the same limits; sources in wide_range_recipes.csv. The README gives the same figures."""
     found, best = found_and_best(library, *span, 0.0)
