@@ -6,7 +6,7 @@ from pathlib import Path
 
 import pytest
 
-from mixind.library import Library, bundled_folder
+from mixind.library import Library
 
 
 @pytest.fixture(scope="session")
@@ -17,7 +17,7 @@ def library() -> Library:
 @pytest.fixture
 def dye_text() -> str:
     """A sound dye file, for tests that spoil it."""
-    return (bundled_folder() / "bromocresol_green.toml").read_text(encoding="utf-8")
+    return (Path(__file__).parent / "data" / "sound_dye.toml").read_text(encoding="utf-8")
 
 
 @pytest.fixture
