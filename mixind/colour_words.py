@@ -13,11 +13,14 @@ HUES = ((20, "crimson"), (44, "red"), (58, "orange-red"), (72, "orange"), (86, "
 # A light purple or crimson is called pink, and so is a pale red up to this hue angle; beyond it, it leans to orange.
 PINK_HUES, PINK_LIGHTNESS, PALE_PINK_UP_TO = ("purple", "crimson"), 65.0, 30.0
 
+# What dark orange and dark yellow are called.
+BROWN_HUES, OLIVE_HUES, BROWN_LIGHTNESS = ("orange-red", "orange", "yellow-orange"), ("yellow",), 60.0
+
 # Position of each hue word on the way through the rainbow, for saying how many steps two words lie apart: the seven
 # words that printed tables use (red, orange, yellow, green, blue, indigo, violet) stand one step apart.
 RAINBOW = {"crimson": -0.25, "red": 0.0, "orange-red": 0.5, "orange": 1.0, "yellow-orange": 1.5, "yellow": 2.0,
            "yellow-green": 2.5, "green": 3.0, "blue-green": 3.5, "blue": 4.0, "indigo": 5.0, "violet": 6.0, "purple": 6.25,
-           "pink": 6.5}
+           "pink": 6.5, "brown": 1.0, "olive": 2.25}
 
 COLOURLESS_CHROMA, COLOURLESS_LIGHTNESS = 4.0, 92.0
 GREY_CHROMA = 9.0
@@ -58,8 +61,11 @@ def colour_word(Lab: np.ndarray) -> str:
     hue = float(np.degrees(np.arctan2(b, a)))
     word = hue_word(hue)
     adjective = _strength(L, chroma)
-    pink = (word in PINK_HUES and L >= PINK_LIGHTNESS) or (word == "red" and adjective == "pale " and hue < PALE_PINK_UP_TO)
-    return f"{adjective}{'pink' if pink else word}"
+    if (word in PINK_HUES and L >= PINK_LIGHTNESS) or (word == "red" and adjective == "pale " and hue < PALE_PINK_UP_TO):
+        word = "pink"
+    elif L < BROWN_LIGHTNESS and word in BROWN_HUES + OLIVE_HUES:
+        word = "brown" if word in BROWN_HUES else "olive"
+    return f"{adjective}{word}"
 
 
 def _strength(L: float, chroma: float) -> str:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import dataclasses
 import os
+from collections.abc import Callable
 from itertools import product
 from typing import Any
 
@@ -82,15 +83,15 @@ def command(as_json: bool, replace: bool, save: str | None, chart: str | None, d
     shown = dataclasses.replace(conditions[0], eyes="normal", severity=1.0)
     blend = _titled(found, shown, conditions)
     prediction = predict(blend, task.pH, shown)
-    if chart:
-        write_chart(chart, prediction, replace, date, given["paper"], _verdict(found))
-    if save:
-        write_whole(save, blend_text(blend).encode(), replace)
+    unwritten = _write(save, chart, replace, lambda path: write_chart(
+        path, prediction, replace, date, given["paper"], _verdict(found)), blend)
     if as_json:
         printing.as_json({"mixind": VERSION, "blend": blend.facts(), **found.facts(), "conditions": shown.facts(),
                           "viewers": [c.facts() for c in conditions], "rows": prediction.rows()})
     else:
         _print(found, blend, prediction, choice)
+    if unwritten:
+        raise unwritten
     if not found.told_apart:
         low, high = (pH_text(value) for value in found.worst.pair)
         raise NoAnswer(f"pH {low} and {high} are not told apart: separation {found.worst.separation:.1f}, {threshold:g} "
@@ -110,6 +111,18 @@ def _check_targets(save: str | None, chart: str | None, replace: bool, date: str
             check_target(target, replace)
     if task.pH.size > _MANY_RUNGS:
         printing.remark(f"{task.pH.size} pH to tell apart: this takes minutes")
+
+
+def _write(save: str | None, chart: str | None, replace: bool, draw: Callable[[str], None], blend: Blend) -> MixindError | None:
+    """Write what is to be written; return a fault instead of raising it, so that the result is printed all the same."""
+    try:
+        if chart:
+            draw(chart)
+        if save:
+            write_whole(save, blend_text(blend).encode(), replace)
+    except MixindError as error:
+        return error
+    return None
 
 
 def _verdict(found: Formulation) -> Verdict | None:
