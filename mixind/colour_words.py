@@ -14,7 +14,7 @@ HUES = ((20, "crimson"), (44, "red"), (58, "orange-red"), (72, "orange"), (86, "
 PINK_HUES, PINK_LIGHTNESS, PALE_PINK_UP_TO = ("purple", "crimson"), 65.0, 30.0
 
 # What dark orange and dark yellow are called.
-BROWN_HUES, OLIVE_HUES, BROWN_LIGHTNESS = ("orange-red", "orange", "yellow-orange"), ("yellow",), 60.0
+BROWN_HUES, OLIVE_HUES, BROWN_LIGHTNESS, BROWN_CHROMA = ("orange-red", "orange", "yellow-orange"), ("yellow",), 60.0, 65.0
 
 # Position of each hue word on the way through the rainbow, for saying how many steps two words lie apart: the seven
 # words that printed tables use (red, orange, yellow, green, blue, indigo, violet) stand one step apart.
@@ -63,7 +63,7 @@ def colour_word(Lab: np.ndarray) -> str:
     adjective = _strength(L, chroma)
     if (word in PINK_HUES and L >= PINK_LIGHTNESS) or (word == "red" and adjective == "pale " and hue < PALE_PINK_UP_TO):
         word = "pink"
-    elif L < BROWN_LIGHTNESS and word in BROWN_HUES + OLIVE_HUES:
+    elif L < BROWN_LIGHTNESS and chroma < BROWN_CHROMA and word in BROWN_HUES + OLIVE_HUES:
         word = "brown" if word in BROWN_HUES else "olive"
     return f"{adjective}{word}"
 
