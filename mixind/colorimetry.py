@@ -38,6 +38,7 @@ _CAM16 = np.array([[0.401288, 0.650173, -0.051461], [-0.250268, 1.204414, 0.0458
 ADAPTING_LUMINANCE = 64.0
 BACKGROUND = 20.0
 
+
 def _xyz_from_xy(x: float, y: float) -> np.ndarray:
     return np.array([x / y, 1.0, (1 - x - y) / y])
 

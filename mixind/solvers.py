@@ -3,24 +3,15 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 
 import numpy as np
 
 Function = Callable[[np.ndarray], np.ndarray]
 
 
-@dataclass(frozen=True)
-class Optimum:
-    """Where a solver stopped: the point, (n,), and how many iterations it took."""
-
-    x: np.ndarray
-    iterations: int
-
-
 def raise_the_lowest(values: Function, slopes: Function, start: np.ndarray, count: int,
-                     most_iterations: int = 60, tolerance: float = 1e-6) -> Optimum:
-    """Return a point of the unit box at which the lowest of several smooth functions is locally largest.
+                     most_iterations: int = 60, tolerance: float = 1e-6) -> np.ndarray:
+    """Return a point of the unit box, (n,), at which the lowest of several smooth functions is locally largest.
 
     Solved on the epigraph: maximise t with f_k(x) >= t, by sequential quadratic programming (SLSQP of scipy). Further
     conditions g(x) >= 0 may follow the f_k.
@@ -48,4 +39,4 @@ def raise_the_lowest(values: Function, slopes: Function, start: np.ndarray, coun
         lambda z: -z[n], np.append(start, first[:count].min() / scale), jac=lambda z: objective, method="SLSQP",
         bounds=[(0.0, 1.0)] * n + [(None, None)], constraints=[epigraph],
         options={"maxiter": most_iterations, "ftol": tolerance})
-    return Optimum(np.clip(np.nan_to_num(result.x[:n]), 0.0, 1.0), int(result.nit))
+    return np.asarray(np.clip(np.nan_to_num(result.x[:n]), 0.0, 1.0))

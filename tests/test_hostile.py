@@ -102,6 +102,23 @@ def test_a_link_is_followed_and_not_replaced(tmp_path: Path) -> None:
     assert "component" in (tmp_path / "real.toml").read_text()
 
 
+@pytest.mark.parametrize("step", ["0.333333", "0.6666667", "0.12"])
+def test_a_saved_span_is_read_again(tmp_path: Path, step: str) -> None:
+    """A step of a third was once saved with two decimals, which do not fit the span."""
+    job = ("formulate", "--from", "6", "--to", "8", "--step", step, "--dyes", "methyl red,BTB,phenol red", "--effort", "quick",
+           "--threshold", "0.01", "--dose-tolerance", "0", "--save", "a.toml")
+    found = run(*job, folder=tmp_path)
+    again = run("predict", "a.toml", folder=tmp_path)
+    assert again.returncode == 0, again.stderr
+    rows = [line for line in again.stdout.splitlines() if "#" in line]
+    assert rows
+    assert all(row in found.stdout for row in rows)
+
+
+def test_a_blank_span_is_refused(blend_file: Path) -> None:
+    refused(run("predict", str(blend_file), "--ph", ""), "pH: '' is not of the form")
+
+
 def test_aged_solutions_stay_aged(tmp_path: Path) -> None:
     job = ("formulate", "--from", "11", "--to", "13", "--dyes", "phenolphthalein,thymolphthalein", "--aged", "--effort", "quick",
            "--dose-tolerance", "0", "--save", "a.toml")

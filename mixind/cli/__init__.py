@@ -68,7 +68,8 @@ class LazyGroup(click.Group):
             closed = type(sys.stdout).__name__.endswith("PacifyFlushWrapper")
             sys.exit(0 if closed else leaving.code)
         except OSError as error:
-            _complain(f"the output cannot be written: {error.strerror}.", 2)
+            where = error.filename or "the output cannot be written"
+            _complain(f"{where}: {error.strerror}.", 2)
         except MixindError as error:
             _complain(str(error), 1 if isinstance(error, NoAnswer) else 2)
         except click.ClickException as error:

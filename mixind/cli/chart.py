@@ -14,12 +14,12 @@ from mixind.prediction import predict
 @click.command()
 @click.argument("blend", metavar="BLEND")
 @click.argument("out", metavar="OUT", type=click.Path())
-@click.option("--ph", "span", metavar="FROM:TO[:STEP]", help="Or a list: 4,5.5,7. [default: of the blend, else 4:10]")
+@options.span_option
 @options.paper_option
 @options.date_option
 @options.replace_option
 @options.sample_options
-@options.viewer_options
+@options.viewer_options(several=False)
 @options.library_option
 def command(blend: str, out: str, span: str | None, paper: str, date: str | None, replace: bool, libraries: tuple[str, ...],
             **given: Any) -> None:

@@ -33,7 +33,6 @@ from mixind.search.formulate import (
 from mixind.search.problem import Task
 from mixind.search.subsets import PLANS
 from mixind.version import VERSION
-from mixind.viewing import EYES, OBSERVERS
 
 _MANY_RUNGS = 60
 
@@ -54,11 +53,7 @@ _MANY_RUNGS = 60
 @click.option("--peak-absorbance", type=float, default=DEFAULT_PEAK_ABSORBANCE, show_default=True,
               help="Most that one dye may absorb.")
 @options.sample_options
-@click.option("--light", multiple=True, metavar="LAMP", help=f"{options.LAMPS}; may be repeated. [default: D65]")
-@click.option("--observer", type=click.Choice(list(OBSERVERS)), help="Degrees of field. [default: 2]")
-@click.option("--eyes", multiple=True, type=click.Choice(EYES, case_sensitive=False),
-              help="Colour vision; may be repeated. [default: normal]")
-@click.option("--severity", type=float, help="Of a colour vision deficiency, 0 to 1. [default: 1]")
+@options.viewer_options(several=True)
 @options.metric_options
 @click.option("--effort", type=click.Choice(list(PLANS)), default="normal", show_default=True, help="How hard to search.")
 @click.option("--seed", type=click.IntRange(min=0), default=1, show_default=True, help="Of the random starts.")

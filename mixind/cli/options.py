@@ -46,14 +46,16 @@ def sample_options(command: F) -> F:
     )(command)
 
 
-def viewer_options(command: F) -> F:
-    """Add lamp, observer and eye, one of each."""
+def viewer_options(several: bool) -> Callable[[F], F]:
+    """Return what adds lamp, observer and eye: one of each, or several lamps and eyes."""
+    again = "; may be repeated" if several else ""
     return _several(
-        click.option("--light", metavar="LAMP", help=f"{LAMPS}. [default: D65]"),
+        click.option("--light", multiple=several, metavar="LAMP", help=f"{LAMPS}{again}. [default: D65]"),
         click.option("--observer", type=click.Choice(list(OBSERVERS)), help="Degrees of field. [default: 2]"),
-        click.option("--eyes", type=click.Choice(EYES, case_sensitive=False), help="Colour vision. [default: normal]"),
+        click.option("--eyes", multiple=several, type=click.Choice(EYES, case_sensitive=False),
+                     help=f"Colour vision{again}. [default: normal]"),
         click.option("--severity", type=float, help="Of a colour vision deficiency, 0 to 1. [default: 1]"),
-    )(command)
+    )
 
 
 def metric_options(command: F) -> F:
@@ -65,6 +67,8 @@ def metric_options(command: F) -> F:
     )(command)
 
 
+span_option = click.option("--ph", "span", metavar="FROM:TO[:STEP]",
+                           help="Or a list: 4,5.5,7. [default: of the blend, else 4:10]")
 library_option = click.option(
     "--library", "libraries", multiple=True, metavar="FOLDER", help="Folder with further dye files; may be repeated.")
 json_option = click.option("--json", "as_json", is_flag=True, help="Print JSON instead of text.")
@@ -95,7 +99,7 @@ def blend_and_conditions(path: str, libraries: tuple[str, ...], given: dict[str,
 
 def given_span(span: str | None, blend: Blend) -> np.ndarray:
     """Return the pH asked for, else those the blend is meant for, else 4 to 10."""
-    return pH_series(span or blend.span or "4:10")
+    return pH_series(blend.span or "4:10" if span is None else span)
 
 
 def chosen_threshold(metric: str, threshold: float | None) -> float:

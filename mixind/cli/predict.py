@@ -14,9 +14,9 @@ from mixind.version import VERSION
 
 @click.command()
 @click.argument("blend", metavar="BLEND")
-@click.option("--ph", "span", metavar="FROM:TO[:STEP]", help="Or a list: 4,5.5,7. [default: of the blend, else 4:10]")
+@options.span_option
 @options.sample_options
-@options.viewer_options
+@options.viewer_options(several=False)
 @options.metric_options
 @options.library_option
 @options.json_option

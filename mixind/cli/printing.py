@@ -34,7 +34,7 @@ def remark(text: str) -> None:
 
 def progress(text: str) -> None:
     """Print progress to stderr when somebody watches."""
-    if sys.stderr.isatty():
+    if sys.stderr is not None and sys.stderr.isatty():
         click.echo(f"  {text}", err=True)
 
 
@@ -51,22 +51,26 @@ def colour_terminal() -> bool:
     return sys.stdout is not None and sys.stdout.isatty() and truecolour and not os.environ.get("NO_COLOR")
 
 
-def swatch(hex_colour: str, width: int = 6) -> str:
-    """Return blanks on the colour for a terminal that has it, else nothing."""
+def swatches(colours: list[str], width: int = 6) -> list[str] | None:
+    """Return a blank for a head line and a swatch for each "#rrggbb", or None for a terminal that cannot show them."""
     if not colour_terminal():
-        return ""
-    red, green, blue = (int(hex_colour[i:i + 2], 16) for i in (1, 3, 5))
-    return f"\x1b[48;2;{red};{green};{blue}m{' ' * width}\x1b[0m "
+        return None
+    levels = ([int(colour[i:i + 2], 16) for i in (1, 3, 5)] for colour in colours)
+    return [" " * (width + 1)] + [f"\x1b[48;2;{red};{green};{blue}m{' ' * width}\x1b[0m " for red, green, blue in levels]
 
 
-def table(rows: Iterable[Iterable[str]], indent: str = "  ") -> None:
-    """Print rows in columns; a cell that starts with a digit or sign is set to the right."""
+def table(rows: Iterable[Iterable[str]], indent: str = "  ", leads: Iterable[str] | None = None) -> None:
+    """Print rows in columns; a cell that starts with a digit or sign is set to the right.
+
+    Args:
+        leads: what stands before each row, such as a swatch; its width is not counted.
+    """
     cells = [list(row) for row in rows]
     widths = [max(len(cell) for cell in column) for column in zip(*cells, strict=True)]
-    for row in cells:
+    for row, lead in zip(cells, leads or [""] * len(cells), strict=True):
         shown = [cell.rjust(w) if cell[:1] in "0123456789+-." and cell else cell.ljust(w)
                  for cell, w in zip(row, widths, strict=True)]
-        result((indent + "  ".join(shown)).rstrip())
+        result((indent + lead + "  ".join(shown)).rstrip())
 
 
 def print_blend(blend: Blend) -> None:
@@ -98,19 +102,9 @@ def print_colours(prediction: Prediction, metric: str, kL: float) -> None:
         mapped = "" if row["in_gamut"] else "*"
         sd = f"{row['sd_dE00']:.1f}"
         rows.append([pH_text(row["pH"]), row["colour"], row["hex"] + mapped, L, a, b, sd, following, row["grade"]])
-    if colour_terminal():
-        _table_with_swatches(rows)
-    else:
-        table(rows)
+    table(rows, leads=swatches(prediction.patch.hex()))
     if not prediction.patch.in_gamut.all():
         result(f"  * outside sRGB: shown with less chroma, dE00 up to {prediction.patch.cost.max():.1f} from the true colour")
-
-
-def _table_with_swatches(rows: list[list[str]]) -> None:
-    widths = [max(len(row[i]) for row in rows) for i in range(len(rows[0]))]
-    for row in rows:
-        block = swatch(row[2].rstrip("*")) if row[2].startswith("#") else " " * 7
-        result("  " + block + "  ".join(cell.ljust(w) for cell, w in zip(row, widths, strict=True)).rstrip())
 
 
 def print_separation(separation: float, pair: tuple[float, float], threshold: float | None, metric: str, kL: float) -> None:

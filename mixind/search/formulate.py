@@ -96,9 +96,11 @@ def _weighable(problem: Problem, positions: tuple[int, ...], x: np.ndarray, choi
     share = part.task.dose.share()
     per_share = part.largest * np.array([dye.molar_mass for dye in part.dyes]) / share * 1e3
     final = rounded(part, np.maximum([s for _, s in kept], _NEGLIGIBLE_SHARE), per_share)
-    low, high, step = (pH_text(value) for value in (part.task.pH[0], part.task.pH[-1], part.task.step))
+    ends = (part.task.pH[0], part.task.pH[-1], part.task.step)
+    low, high, step = (pH_text(value) for value in ends)
     blend = blend_of(part.dyes, final * part.largest, part.task.dose, f"pH {low} to {high} in steps of {step}")
-    return replace(blend, span=f"{low}:{high}:{step}")
+    # with all digits, for a step of a third rounded to two would not fit the span again
+    return replace(blend, span=":".join(f"{value:.10g}" for value in ends))
 
 
 def evaluated(task: Task, blend: Blend, threshold: float, record: dict[str, Any]) -> Formulation:

@@ -70,7 +70,7 @@ def climb(problem: Problem, start: np.ndarray, effort: Effort, most_iterations: 
             break
         working = np.union1d(working, added)
         memo = _Memo(problem, problem.pairs[working], effort)
-        x = raise_the_lowest(memo.values, memo.slopes, x, working.size, most_iterations).x
+        x = raise_the_lowest(memo.values, memo.slopes, x, working.size, most_iterations)
         found = Found(x, score(problem, x))
         best = found if found.worst > best.worst else best
     return best
